@@ -1,0 +1,74 @@
+//! From residues modulo many primes to exact numbers, with a check at fresh primes.
+//!
+//! All but the last [`FRESH`] primes determine a candidate; it is accepted only if it reproduces the
+//! residues at the fresh ones, so that a wrong candidate passes with probability about 2^{−120}.
+
+use super::flint::{self, Remaindering};
+use super::prime_field::PrimeField;
+use super::ring::Ring;
+use rayon::iter::{IntoParallelRefMutIterator, ParallelIterator, IndexedParallelIterator};
+use rug::{Integer, Rational};
+
+/// How many primes are kept for the check.
+pub const FRESH: usize = 2;
+
+/// A vector of numbers known modulo more and more primes.
+#[derive(Debug, Default)]
+pub struct Reconstruction {
+    fields: Vec<PrimeField>,
+    images: Vec<Vec<u64>>,
+    values: Vec<Option<Rational>>,
+}
+
+impl Reconstruction {
+    /// Adds the ordinary residues modulo one prime; every call must give equally many.
+    pub fn push(&mut self, field: PrimeField, residues: Vec<u64>) {
+        if self.fields.is_empty() {
+            self.values = vec![None; residues.len()];
+        }
+        debug_assert_eq!(residues.len(), self.values.len());
+        self.fields.push(field);
+        self.images.push(residues);
+    }
+
+    /// The number of primes so far.
+    pub fn primes(&self) -> usize {
+        self.fields.len()
+    }
+
+    /// Tries to reconstruct as rationals what is still unknown; returns how many numbers remain unknown.
+    pub fn attempt(&mut self) -> usize {
+        self.attempt_with(|residue, modulus| flint::reconstruct(residue, modulus))
+    }
+
+    /// As [`Reconstruction::attempt`] for integers, which need half as many primes.
+    pub fn attempt_integers(&mut self) -> usize {
+        self.attempt_with(|residue, _| Some(Rational::from(residue)))
+    }
+
+    fn attempt_with(&mut self, candidate: impl Fn(&Integer, &Integer) -> Option<Rational> + Sync) -> usize {
+        let Some(used) = self.fields.len().checked_sub(FRESH).filter(|used| *used > 0) else {
+            return self.values.len().max(1);
+        };
+        let primes: Vec<u64> = self.fields[..used].iter().map(PrimeField::modulus).collect();
+        let modulus = primes.iter().fold(Integer::from(1), |m, p| m * *p);
+        let tree = Remaindering::new(primes);
+        let (fields, images) = (&self.fields, &self.images);
+        self.values.par_iter_mut().with_min_len(16).enumerate().for_each(|(i, value)| {
+            if value.is_some() {
+                return;
+            }
+            let residues: Vec<u64> = images[..used].iter().map(|image| image[i]).collect();
+            let residue = tree.combine(&residues);
+            *value = candidate(&residue, &modulus).filter(|candidate| {
+                (used..fields.len()).all(|k| fields[k].residue(fields[k].scalar(candidate)) == images[k][i])
+            });
+        });
+        self.values.iter().filter(|value| value.is_none()).count()
+    }
+
+    /// The numbers, once [`Reconstruction::attempt`] has returned 0.
+    pub fn finish(self) -> Option<Vec<Rational>> {
+        self.values.into_iter().collect()
+    }
+}
