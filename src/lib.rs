@@ -2,9 +2,13 @@
 //! Yang–Mills theory, for whole families of operators. DEVELOPERS.md has the architecture.
 
 pub mod algebra;
+pub mod baxter;
 pub mod chain;
 pub mod error;
 pub mod family;
+pub mod engine;
+pub mod finite_size;
+pub mod lift;
 pub mod observer;
 pub mod record;
 pub mod cli;

@@ -45,6 +45,15 @@ impl Grading {
             next += 1;
         }
         products.sort();
+        Grading::over(order, products)
+    }
+
+    /// Plain truncated power series through the given order, in any variable: no zeta values.
+    pub fn plain(order: usize) -> Grading {
+        Grading::over(order, vec![(0, Vec::new())])
+    }
+
+    fn over(order: usize, products: Vec<(usize, Vec<u32>)>) -> Grading {
         let allowed: Vec<usize> = (0..=order).map(|n| products.iter().filter(|(cost, _)| *cost <= n).count()).collect();
         let mut offsets = vec![0];
         for count in &allowed {
