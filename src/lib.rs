@@ -2,6 +2,7 @@
 //! Yang–Mills theory, for whole families of operators. DEVELOPERS.md has the architecture.
 
 pub mod algebra;
+pub mod audit;
 pub mod chain;
 pub mod error;
 pub mod family;
