@@ -75,9 +75,11 @@ fn regular(field: &Field, plus: &[Graded], minus: &[Graded], orders: usize) -> R
     let s_minus = logarithmic(field, minus, count, orders)?;
     // For an even or odd polynomial the two differ by signs only.
     let mirrored = plus.len() == minus.len()
-        && plus.iter().zip(minus).enumerate().all(|(j, (a, b))| {
-            *a == b.scale(&ratio(if (j + plus.len()).is_multiple_of(2) { -1 } else { 1 }, 1))
-        });
+        && plus
+            .iter()
+            .zip(minus)
+            .enumerate()
+            .all(|(j, (a, b))| *a == b.scale(&ratio(if (j + plus.len()).is_multiple_of(2) { -1 } else { 1 }, 1)));
     let s_plus = if mirrored {
         s_minus.iter().enumerate().map(|(k, s)| s.scale(&ratio(if k % 2 == 0 { -1 } else { 1 }, 1))).collect()
     } else {
@@ -147,7 +149,13 @@ fn evaluate(field: &Field, a: &[Graded], w: &Graded, orders: usize) -> Graded {
 
 impl Singular {
     /// P_r − r G Σ_k w_k(h) F_{k−r}(c) over k − r ≥ 1, orders below `known`.
-    fn correct(&self, field: &Field, sums: &[Graded], potential: &Potential, known: usize) -> Result<Vec<Graded>, String> {
+    fn correct(
+        &self,
+        field: &Field,
+        sums: &[Graded],
+        potential: &Potential,
+        known: usize,
+    ) -> Result<Vec<Graded>, String> {
         let point = Graded::constant(Poly::one()).add(&self.c);
         let value = potential.polynomial(field, known).at(field, &point, known);
         let inverse = value.inverse(field, known).ok_or("W(1) has no inverse")?;

@@ -1,4 +1,4 @@
-//! The number field K = Q\[x\]/f of an orbit: products, inverses, traces of arithmetic back to x.
+//! The number field K = Q\[x\]/f of an orbit: products, inverses, linear systems.
 //!
 //! Inside, the generator is y = D x, with D the common denominator of f, so that its minimal
 //! polynomial is monic with integer coefficients and products need no division.
@@ -42,9 +42,16 @@ impl Field {
         self.degree
     }
 
-    /// D in y = D x.
-    pub fn scale(&self) -> &BigInt {
-        &self.scale
+    /// The minimal polynomial of y, constant term first.
+    pub fn minimal(&self) -> Vec<BigInt> {
+        let mut minimal = self.modulus.clone();
+        minimal.push(BigInt::one());
+        minimal
+    }
+
+    /// y.
+    pub fn generator(&self) -> Poly {
+        Poly::new(vec![self.reduce(vec![BigInt::zero(), BigInt::one()])], BigInt::one())
     }
 
     /// Σ c_k x^k as a constant.
@@ -93,8 +100,7 @@ impl Field {
     /// Σ a·b over the pairs, modulo v^limit. One reduction modulo f and one gcd for the whole sum.
     pub fn dot(&self, pairs: &[(&Poly, &Poly)], limit: usize) -> Poly {
         let pairs: Vec<_> = pairs.iter().filter(|(a, b)| !a.is_zero() && !b.is_zero()).collect();
-        let denominator =
-            pairs.iter().fold(BigInt::one(), |d, (a, b)| lcm(&d, &(a.denominator() * b.denominator())));
+        let denominator = pairs.iter().fold(BigInt::one(), |d, (a, b)| lcm(&d, &(a.denominator() * b.denominator())));
         let length = pairs.iter().map(|(a, b)| a.len() + b.len() - 1).max().unwrap_or(0).min(limit);
         let mut sum: Vec<Vec<BigInt>> = vec![Vec::new(); length];
         for (a, b) in pairs {
@@ -186,7 +192,8 @@ impl Field {
         let minus: Vec<Poly> = (0..p.len()).map(|j| self.mul(&p.coefficient(j), &first).negate()).collect();
         let mut result = vec![first];
         for n in 1..limit {
-            let pairs: Vec<_> = (1..=n.min(minus.len().saturating_sub(1))).map(|j| (&minus[j], &result[n - j])).collect();
+            let pairs: Vec<_> =
+                (1..=n.min(minus.len().saturating_sub(1))).map(|j| (&minus[j], &result[n - j])).collect();
             let next = self.dot(&pairs, usize::MAX);
             result.push(next);
         }

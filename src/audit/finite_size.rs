@@ -120,9 +120,8 @@ impl Pieces {
         let rest = x.coefficient(length - 2).add(&v.coefficient(length));
         constant = constant.add(&field.mul(&e, &rest));
         let slope = r.derivative();
-        let logarithmic = field
-            .mul(&slope.at(&ratio(1, 2)), &over_plus)
-            .sub(&field.mul(&slope.at(&ratio(-1, 2)), &over_minus));
+        let logarithmic =
+            field.mul(&slope.at(&ratio(1, 2)), &over_plus).sub(&field.mul(&slope.at(&ratio(-1, 2)), &over_minus));
         constant = constant.sub(&field.mul(&field.mul(&g, &g), &logarithmic));
         if !pole_coefficient(length).is_zero() {
             return Err("the simple pole of the twist limit does not cancel".into());
@@ -188,9 +187,7 @@ impl RootSums {
     /// e(ρ) = φ(ρ)/[ρ^L (ρ−1)^p m'(ρ)].
     fn new(field: &Field, length: usize, phi: Poly, m: &Poly, p: usize) -> Result<RootSums, String> {
         let top = m.len() - 2;
-        let invert = |a: i64| {
-            field.inverse(&m.at(&ratio(a, 1))).ok_or_else(|| "Q(±1/2) has no inverse".to_string())
-        };
+        let invert = |a: i64| field.inverse(&m.at(&ratio(a, 1))).ok_or_else(|| "Q(±1/2) has no inverse".to_string());
         let (zero, one) = (invert(0)?, invert(1)?);
         // f/(s − a) mod m = (f − f(a)/m(a) m)/(s − a).
         let divide = |f: &Poly, a: i64, inverse: &Poly| {
@@ -218,12 +215,8 @@ impl RootSums {
     /// (ρ−t)²/(1+t−ρ) = 1/(1−ρ+t) + t − 1 − ρ.
     fn contribution(&self, field: &Field, length: usize, x: &Poly, inverse_x: &Poly) -> Poly {
         let [zeroth, first] = &self.moments;
-        let mut series: Vec<Poly> = self
-            .reciprocal
-            .iter()
-            .enumerate()
-            .map(|(k, d)| if k % 2 == 0 { d.clone() } else { d.negate() })
-            .collect();
+        let mut series: Vec<Poly> =
+            self.reciprocal.iter().enumerate().map(|(k, d)| if k % 2 == 0 { d.clone() } else { d.negate() }).collect();
         series[0] = series[0].sub(zeroth).sub(first);
         series[1] = series[1].add(zeroth);
         let series = Poly::from_constants(&series);
@@ -251,8 +244,7 @@ fn zeta_part(field: &Field, length: usize, x: &Poly, inverse_x: &Poly) -> BTreeM
         ([0, 2, -2], INVERSE, ONE),
         ([0, 2, -2], ONE, X),
     ];
-    let constants: Vec<Vec<Poly>> =
-        series.iter().map(|p| (0..length).map(|j| p.coefficient(j)).collect()).collect();
+    let constants: Vec<Vec<Poly>> = series.iter().map(|p| (0..length).map(|j| p.coefficient(j)).collect()).collect();
     // weights[k][(f, g, i, j)]: how often f_i g_j enters the coefficient of ζ(k).
     let mut weights: BTreeMap<u32, BTreeMap<(usize, usize, usize, usize), BigRational>> = BTreeMap::new();
     for i in 0..length {

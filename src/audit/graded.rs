@@ -51,17 +51,15 @@ impl Graded {
 
     /// The entries at one order.
     pub fn order(&self, order: usize) -> BTreeMap<Monomial, Poly> {
-        self.terms.range((order, Vec::new())..(order + 1, Vec::new())).map(|((_, m), p)| (m.clone(), p.clone())).collect()
+        self.terms
+            .range((order, Vec::new())..(order + 1, Vec::new()))
+            .map(|((_, m), p)| (m.clone(), p.clone()))
+            .collect()
     }
 
     /// The entry at h⁰ without zeta values.
     pub fn leading(&self) -> Poly {
         self.terms.get(&(0, Monomial::new())).cloned().unwrap_or_else(Poly::zero)
-    }
-
-    /// Whether this is 0.
-    pub fn is_zero(&self) -> bool {
-        self.terms.is_empty()
     }
 
     /// Every entry through a linear map.
@@ -128,8 +126,7 @@ impl Graded {
             }
         }
         let lists: Vec<_> = lists.into_iter().collect();
-        let products: Vec<_> =
-            lists.into_par_iter().map(|(key, list)| (key, field.dot(&list, usize::MAX))).collect();
+        let products: Vec<_> = lists.into_par_iter().map(|(key, list)| (key, field.dot(&list, usize::MAX))).collect();
         Graded { terms: products.into_iter().filter(|(_, poly)| !poly.is_zero()).collect() }
     }
 
@@ -188,9 +185,11 @@ mod tests {
     fn inverse_of_a_series() {
         let field = Field::new(&[ratio(-2, 1), ratio(0, 1), ratio(1, 1)]);
         let root = field.element(&[ratio(0, 1), ratio(1, 1)]);
-        let a = Graded::constant(root.clone())
-            .add(&Graded::term(1, vec![], Poly::integer(3)))
-            .add(&Graded::term(3, vec![3], root.clone()));
+        let a = Graded::constant(root.clone()).add(&Graded::term(1, vec![], Poly::integer(3))).add(&Graded::term(
+            3,
+            vec![3],
+            root.clone(),
+        ));
         let inverse = a.inverse(&field, 7).unwrap();
         assert_eq!(a.mul(&field, &inverse, 7), Graded::constant(Poly::one()));
         // At h⁶ the square of ζ3 must appear.

@@ -181,12 +181,6 @@ impl Poly {
         Poly { coefficients, denominator: self.denominator.clone() }
     }
 
-    /// The remainder modulo v^k.
-    pub fn truncate(&self, k: usize) -> Poly {
-        let kept = self.coefficients.iter().take(k).cloned().collect();
-        Poly::new(kept, self.denominator.clone())
-    }
-
     /// d/dv.
     pub fn derivative(&self) -> Poly {
         let coefficients = self.coefficients.iter().enumerate().skip(1);
