@@ -164,28 +164,6 @@ impl Field {
         Some(Poly::new(vec![solution], determinant))
     }
 
-    /// Solves a square system over K by elimination; `None` when it is singular.
-    pub fn solve(&self, mut rows: Vec<Vec<Poly>>) -> Option<Vec<Poly>> {
-        let n = rows.len();
-        for k in 0..n {
-            let pivot = (k..n).find(|&i| !rows[i][k].is_zero())?;
-            rows.swap(k, pivot);
-            let inverse = self.inverse(&rows[k][k])?;
-            let row: Vec<Poly> = rows[k].iter().map(|entry| self.mul(entry, &inverse)).collect();
-            for (i, other) in rows.iter_mut().enumerate() {
-                if i == k || other[k].is_zero() {
-                    continue;
-                }
-                let factor = other[k].negate();
-                for (target, entry) in other.iter_mut().zip(&row) {
-                    *target = self.dot(&[(&factor, entry), (&Poly::one(), target)], usize::MAX);
-                }
-            }
-            rows[k] = row;
-        }
-        rows.into_iter().map(|mut row| row.pop()).collect()
-    }
-
     /// Power series 1/p modulo v^limit; `None` when the constant term has no inverse.
     pub fn series_inverse(&self, p: &Poly, limit: usize) -> Option<Poly> {
         let first = self.inverse(&p.coefficient(0))?;
@@ -268,14 +246,5 @@ mod tests {
         let rows = [[0, 2, 6], [3, 1, 9]].map(|row| row.map(BigInt::from).to_vec()).to_vec();
         let (solution, denominator) = solve_integer(rows).unwrap();
         assert_eq!(solution, [&denominator * 2, &denominator * 3]);
-        let [field, _] = fields();
-        let x = field.element(&[ratio(0, 1), ratio(1, 1)]);
-        let solution = field.solve(vec![
-            vec![Poly::zero(), x.clone(), Poly::integer(2)],
-            vec![Poly::integer(1), Poly::integer(1), x.clone()],
-        ]);
-        let solution = solution.unwrap();
-        assert_eq!(field.mul(&solution[1], &x), Poly::integer(2));
-        assert_eq!(solution[0].add(&solution[1]), x);
     }
 }

@@ -3,7 +3,7 @@
 //! From a record and its certificate it re-derives every exact number by plain arithmetic over the
 //! number field of each orbit (`num-bigint`, `num-rational`), sharing no code with the engine beyond
 //! the record itself. Finding the lifted pair is the expensive part and is never repeated: that the
-//! certificate's pair satisfies the Wronskian relation is checked instead, and the pair is unique.
+//! certificate's pair satisfies the Wronskian relation is checked instead, and that no other pair can.
 
 mod charges;
 mod decimals;
@@ -21,6 +21,7 @@ mod sample;
 mod spectrum;
 #[cfg(test)]
 mod tests;
+mod unique;
 
 pub use report::{Audit, Finding, Findings, OrbitAudit, Verdict};
 

@@ -9,6 +9,7 @@ use super::irreducible::{Irreducibility, irreducible};
 use super::poly::{Poly, ratio};
 use super::report::{Findings, OrbitAudit};
 use super::spectrum::{Fingerprint, mirror_pairs, shift_eigenvalue};
+use super::unique::unique_lift;
 use crate::record::{CertificateOrbit, CertificateTerm, Coefficient, Element, Orbit, Parity, Status, Term, Zeta};
 use num_rational::BigRational;
 use num_traits::{One, Zero};
@@ -97,6 +98,11 @@ pub fn audit_orbit(subject: &Subject) -> Outcome {
                 findings.proved("the coefficients of Q generate the field: distinct embeddings are distinct states")
             }
             _ => findings.open("not shown that distinct embeddings of the field are distinct states"),
+        }
+        if unique_lift(&field, &state.q, &state.q2.leading()) {
+            findings.proved("the lift of the one-loop pair is unique");
+        } else {
+            findings.open("not shown that the lift of the one-loop pair is unique");
         }
         through = state.coefficients(&mut findings);
     } else {

@@ -63,6 +63,28 @@ fn second(field: &Field, length: usize, q1: &Poly) -> Poly {
     q2
 }
 
+/// Solves a square system over K by elimination; `None` when it is singular.
+fn solve(field: &Field, mut rows: Vec<Vec<Poly>>) -> Option<Vec<Poly>> {
+    let n = rows.len();
+    for k in 0..n {
+        let pivot = (k..n).find(|&i| !rows[i][k].is_zero())?;
+        rows.swap(k, pivot);
+        let inverse = field.inverse(&rows[k][k])?;
+        let row: Vec<Poly> = rows[k].iter().map(|entry| field.mul(entry, &inverse)).collect();
+        for (i, other) in rows.iter_mut().enumerate() {
+            if i == k || other[k].is_zero() {
+                continue;
+            }
+            let factor = other[k].negate();
+            for (target, entry) in other.iter_mut().zip(&row) {
+                *target = field.dot(&[(&factor, entry), (&Poly::one(), target)], usize::MAX);
+            }
+        }
+        rows[k] = row;
+    }
+    rows.into_iter().map(|mut row| row.pop()).collect()
+}
+
 /// Solves the lift through h^{loops−1}.
 fn lift(field: &Field, length: usize, q: &Poly, loops: usize) -> (Graded, Graded) {
     let m = q.len() - 1;
@@ -90,7 +112,7 @@ fn lift(field: &Field, length: usize, q: &Poly, loops: usize) -> (Graded, Graded
             let rows = (0..length)
                 .map(|i| columns.iter().chain([&right]).map(|column| column.coefficient(i)).collect())
                 .collect();
-            let solution = field.solve(rows).unwrap();
+            let solution = solve(field, rows).unwrap();
             for (first, target) in [(true, &mut q1), (false, &mut q2)] {
                 let sum = unknowns.iter().zip(&solution).filter(|((f, _), _)| *f == first);
                 let poly = sum.fold(Poly::zero(), |p, ((_, j), c)| p.add(&c.times_power(*j)));
