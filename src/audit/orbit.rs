@@ -8,7 +8,7 @@ use super::graded::{Graded, Monomial};
 use super::irreducible::{Irreducibility, irreducible};
 use super::poly::{Poly, ratio};
 use super::report::{Findings, OrbitAudit};
-use super::spectrum::{Fingerprint, mirror_pairs, shift_eigenvalue};
+use super::spectrum::{Fingerprint, charge, mirror_pairs, transfer};
 use super::unique::unique_lift;
 use crate::record::{CertificateOrbit, CertificateTerm, Coefficient, Element, Orbit, Parity, Status, Term, Zeta};
 use num_rational::BigRational;
@@ -128,15 +128,6 @@ fn decimals(findings: &mut Findings, orbit: &Orbit, minimal: &[BigRational]) {
     let Some(one_loop) = orbit.coefficient(1).and_then(plain) else {
         return findings.open("the decimals of the states: there is no one-loop coefficient to compare with");
     };
-    if orbit.generator == "gamma_1" {
-        let mut omega = vec![BigRational::zero(); minimal.len() - 1];
-        if let Some(linear) = omega.get_mut(1) {
-            *linear = BigRational::one();
-        } else {
-            omega = vec![-&minimal[0]];
-        }
-        findings.check(one_loop == omega, "omega is gamma_1");
-    }
     let states: Vec<_> = orbit.states.iter().map(|s| (s.omega.clone(), s.one_loop.clone())).collect();
     match check_states(minimal, &one_loop, &states) {
         Ok(()) => findings.proved("every printed decimal; all embeddings are real"),
@@ -215,8 +206,13 @@ impl<'a> State<'a> {
     /// Zero momentum, the singular flag and parity.
     fn one_loop(&self, findings: &mut Findings) {
         let Subject { length, magnons, orbit, .. } = *self.subject;
-        let shift = shift_eigenvalue(self.field, length, magnons, &self.q, &self.q2.leading());
-        findings.check(shift == Poly::one(), "zero total momentum: T(1/2) = 1");
+        let transfer = transfer(self.field, length, magnons, &self.q, &self.q2.leading());
+        findings.check(transfer.coefficient(0) == Poly::one(), "zero total momentum: T(1/2) = 1");
+        match charge(self.field, length, &transfer, &orbit.generator) {
+            Some(value) => findings.check(value == self.omega(), format!("omega is {}", orbit.generator)),
+            None => findings
+                .open(format!("\"{}\" is not a charge known here, so what omega is stays open", orbit.generator)),
+        }
         let singular = self.q.at(&ratio(1, 2)).is_zero() && self.q.at(&ratio(-1, 2)).is_zero();
         findings.check(singular == orbit.singular, format!("Q(1/2) = Q(-1/2) = 0 is {singular}"));
         match orbit.parity {

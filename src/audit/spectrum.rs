@@ -143,12 +143,29 @@ fn solve_mirror<'a>(field: &'a Field, q: &'a Poly) -> impl Iterator<Item = Poly>
     })
 }
 
-/// The transfer matrix eigenvalue at v = ½, the one-site shift: [Q₁(3/2)Q₂(−½) − Q₁(−½)Q₂(3/2)]/(2M−L−1).
-pub fn shift_eigenvalue(field: &Field, length: usize, magnons: usize, q1: &Poly, q2: &Poly) -> Poly {
+/// The transfer matrix eigenvalue in powers of v − ½:
+/// T(v) = [Q₁(v+1)Q₂(v−1) − Q₁(v−1)Q₂(v+1)]/(2M−L−1). Its constant term is the one-site shift.
+pub fn transfer(field: &Field, length: usize, magnons: usize, q1: &Poly, q2: &Poly) -> Poly {
     let (low, high) = (ratio(-1, 2), ratio(3, 2));
-    let (a, b) = (q1.at(&high), q1.at(&low).negate());
     let factor = 2 * magnons as i64 - length as i64 - 1;
-    field.dot(&[(&a, &q2.at(&low)), (&b, &q2.at(&high))], 1).scale(&ratio(1, factor))
+    let pairs = [(&q1.shift(&high), &q2.shift(&low)), (&q1.shift(&low).negate(), &q2.shift(&high))];
+    field.dot(&pairs, usize::MAX).scale(&ratio(1, factor))
+}
+
+/// The even charge a generator is named after, from T(v) = 1 + a₁(v−½) + …: γ₁ = 2(L − a₁) and
+/// q₄ = ½ d³/dv³ log T at v = ½ = 3a₃ − 3a₁a₂ + a₁³, which is the operator
+/// Σ_k ([P_k,[P_{k+1},P_{k+2}]] + 2P_k − P_{k,k+2}). `None` for an unknown name.
+pub fn charge(field: &Field, length: usize, transfer: &Poly, name: &str) -> Option<Poly> {
+    let [a, b, c] = [1, 2, 3].map(|k| transfer.coefficient(k));
+    let gamma = Poly::integer(length as i64).sub(&a).scale(&ratio(2, 1));
+    let rest = field.mul(&a, &a).sub(&b.scale(&ratio(3, 1)));
+    let fourth = c.scale(&ratio(3, 1)).add(&field.mul(&a, &rest));
+    match name {
+        "gamma_1" => Some(gamma),
+        "q_4" => Some(fourth),
+        "gamma_1 + q_4" => Some(gamma.add(&fourth)),
+        _ => None,
+    }
 }
 
 /// Necklaces with `length` beads, `magnons` of them of the second colour, by counting the colourings
@@ -171,7 +188,7 @@ pub fn primaries(length: usize, magnons: usize) -> BigInt {
 
 #[cfg(test)]
 mod tests {
-    use super::{Fingerprint, PRIME, characteristic, mirror_pairs, primaries};
+    use super::{Fingerprint, PRIME, characteristic, charge, mirror_pairs, primaries, transfer};
     use crate::audit::field::Field;
     use crate::audit::poly::{Poly, ratio};
     use num_bigint::BigInt;
@@ -181,6 +198,22 @@ mod tests {
     fn counts() {
         let counts: Vec<BigInt> = (2..=6).map(|m| primaries(12, m)).collect();
         assert_eq!(counts, [5, 13, 24, 23, 14].map(BigInt::from));
+    }
+
+    /// L = 4, M = 2 with Q₁ = v² + 1/12: γ₁ = 12, and q₄ = L − Σ_k [(v_k+½)⁻³ − (v_k−½)⁻³]. With
+    /// Q(½+w) = 1/3 + w + w² the sum of (v_k−½)⁻³ is p₃ of the reciprocal roots, whose symmetric functions are
+    /// e₁ = −3, e₂ = 3: p₃ = e₁³ − 3e₁e₂ = 0, and the other sum is its negative. So q₄ = 4.
+    #[test]
+    fn charges_of_konishi() {
+        let field = Field::new(&[ratio(-12, 1), ratio(1, 1)]);
+        let q1 = Poly::from_rationals(&[ratio(1, 12), ratio(0, 1), ratio(1, 1)]);
+        let q2 = Poly::from_rationals(&[ratio(0, 1), ratio(-1, 4), ratio(0, 1), ratio(1, 1)]);
+        let t = transfer(&field, 4, 2, &q1, &q2);
+        assert_eq!((t.len(), t.coefficient(0)), (5, Poly::one()));
+        assert_eq!(charge(&field, 4, &t, "gamma_1"), Some(Poly::integer(12)));
+        assert_eq!(charge(&field, 4, &t, "q_4"), Some(Poly::integer(4)));
+        assert_eq!(charge(&field, 4, &t, "gamma_1 + q_4"), Some(Poly::integer(16)));
+        assert_eq!(charge(&field, 4, &t, "gamma_2"), None);
     }
 
     #[test]
