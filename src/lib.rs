@@ -2,13 +2,14 @@
 //! Yang–Mills theory, for whole families of operators. DEVELOPERS.md has the architecture.
 
 pub mod algebra;
+pub mod audit;
 pub mod baxter;
 pub mod chain;
+pub mod cli;
+pub mod engine;
 pub mod error;
 pub mod family;
-pub mod engine;
 pub mod finite_size;
 pub mod lift;
 pub mod observer;
 pub mod record;
-pub mod cli;

@@ -1,5 +1,6 @@
 //! The command line: arguments become one validated request per command; no other stage sees clap.
 
+mod audit;
 mod console;
 
 use crate::error::{Error, Result};
@@ -18,7 +19,9 @@ struct Arguments {
 
 /// One variant per command, one file per variant.
 #[derive(Subcommand)]
-enum Command {}
+enum Command {
+    Audit(audit::Arguments),
+}
 
 /// Runs the command that `words` (program name first) ask for.
 ///
@@ -36,6 +39,8 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     };
     let arguments = Arguments::from_arg_matches(&matches)
         .map_err(|error| Error::input(error.to_string().trim_end().to_string()))?;
-    let _console = Console::standard();
-    match arguments.command {}
+    let console = Console::standard();
+    match arguments.command {
+        Command::Audit(arguments) => audit::run(&arguments, &console),
+    }
 }

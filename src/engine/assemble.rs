@@ -5,11 +5,12 @@ use super::image::wants_finite_size;
 use super::orbit::Lifted;
 use super::states;
 use crate::algebra::graded::Grading;
+use crate::algebra::number_field::NumberField;
 use crate::chain::Orbit;
 use crate::error::Result;
 use crate::family::Family;
 use crate::record::{
-    COUPLING, Certificate, CertificateOrbit, CertificateOrder, CertificateTerm, Coefficient, PROGRAM, Parity, Parts, Record,
+    CERTIFICATE, COUPLING, Certificate, CertificateOrbit, CertificateOrder, CertificateTerm, Coefficient, PROGRAM, Parity, Parts, Record,
     State, Status, Term, Zeta,
 };
 use rug::{Integer, Rational};
@@ -132,4 +133,52 @@ fn terms(sum: &[(Vec<u32>, Vec<Rational>)], degree: usize) -> Vec<Term> {
             value: value.iter().map(Rational::to_string).collect(),
         })
         .collect()
+}
+
+/// The certificate of a family.
+pub fn certificate(request: &Request, grading: &Grading, lifted: &[Lifted<'_>]) -> Result<Certificate> {
+    let orbits = lifted.iter().map(|one| certificate_orbit(grading, one)).collect::<Result<Vec<_>>>()?;
+    Ok(Certificate {
+        certificate: CERTIFICATE,
+        length: request.family.length,
+        magnons: request.family.magnons,
+        loops: request.loops,
+        orbits,
+    })
+}
+
+fn certificate_orbit(grading: &Grading, lifted: &Lifted<'_>) -> Result<CertificateOrbit> {
+    let orbit = lifted.orbit;
+    let size = orbit.members();
+    let Family { length, magnons } = orbit.family;
+    let (first, second) = (magnons + 1, length - magnons + 2);
+    let block = (first + second) * size;
+    let mut pair = Vec::with_capacity(grading.order() + 1);
+    for order in 0..=grading.order() {
+        let mut terms = Vec::new();
+        for (entry, product) in grading.entries(order).zip(grading.products(order)) {
+            let numbers = &lifted.pair[entry * block..(entry + 1) * block];
+            if numbers.iter().all(Rational::is_zero) {
+                continue;
+            }
+            let mut elements =
+                numbers.chunks(size).map(|element| element.iter().map(Rational::to_string).collect::<Vec<String>>());
+            terms.push(CertificateTerm {
+                zeta: product.clone(),
+                q1: elements.by_ref().take(first).collect(),
+                q2: elements.collect(),
+            });
+        }
+        pair.push(CertificateOrder { order, terms });
+    }
+    let field: Vec<Rational> = orbit.field.iter().map(Rational::from).collect();
+    let number_field = NumberField::new(field);
+    let rational = |p: &[Integer]| p.iter().map(Rational::from).collect::<Vec<_>>();
+    let image = orbit.image(&number_field, |p| number_field.element(&rational(p)))?;
+    Ok(CertificateOrbit {
+        label: orbit.label.clone(),
+        field: orbit.field.iter().map(Integer::to_string).collect(),
+        omega: number_field.coefficients(&image.omega).iter().map(Rational::to_string).collect(),
+        pair,
+    })
 }

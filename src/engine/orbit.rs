@@ -146,7 +146,7 @@ fn encode(images: &[(usize, Option<Image>)]) -> Vec<u8> {
 
 fn decode(bytes: &[u8], range: std::ops::Range<usize>) -> Option<Vec<(usize, Option<Image>)>> {
     let words: Vec<u64> =
-        bytes.chunks_exact(8).map(|chunk| chunk.try_into().map(u64::from_le_bytes)).collect::<Result<_, _>>().ok()?;
+        bytes.chunks_exact(8).map(|chunk| chunk.try_into().map(u64::from_le_bytes)).collect::<std::result::Result<_, _>>().ok()?;
     let mut words = words.into_iter();
     let mut images = Vec::new();
     for index in range {

@@ -6,9 +6,11 @@
 //! terms ("-9/2"); a missing coefficient is absent, never 0. Unknown keys are refused on reading,
 //! and [`Record::check`] refuses what the keys alone do not exclude.
 
+mod certificate;
 mod check;
 mod file;
 
+pub use certificate::{CERTIFICATE, Certificate, CertificateOrbit, CertificateOrder, CertificateTerm, Element};
 pub use check::canonical_rational;
 pub use file::{file_name, read, read_all, write_atomically};
 
