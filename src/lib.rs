@@ -4,6 +4,7 @@
 pub mod algebra;
 pub mod baxter;
 pub mod chain;
+pub mod cli;
 pub mod error;
 pub mod family;
 pub mod engine;
@@ -11,4 +12,4 @@ pub mod finite_size;
 pub mod lift;
 pub mod observer;
 pub mod record;
-pub mod cli;
+pub mod report;

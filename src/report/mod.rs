@@ -1,0 +1,13 @@
+//! What people read and use: couplings, text, tables, the page, plots, numbers at finite coupling.
+//! Everything here sees result records only.
+
+pub mod coupling;
+pub mod expression;
+pub mod interval;
+pub mod numbers;
+pub mod roots;
+pub mod text;
+pub mod zeta;
+
+#[cfg(test)]
+mod testing;
