@@ -5,6 +5,7 @@ pub mod coupling;
 pub mod expression;
 pub mod interval;
 pub mod numbers;
+pub mod resummation;
 pub mod roots;
 pub mod text;
 pub mod zeta;
