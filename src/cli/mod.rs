@@ -1,6 +1,10 @@
 //! The command line: arguments become one validated request per command; no other stage sees clap.
 
+mod completions;
 mod console;
+mod evaluate;
+mod manual;
+mod reading;
 
 use crate::error::{Error, Result};
 use clap::{CommandFactory as _, FromArgMatches as _, Parser, Subcommand};
@@ -18,7 +22,16 @@ struct Arguments {
 
 /// One variant per command, one file per variant.
 #[derive(Subcommand)]
-enum Command {}
+enum Command {
+    Evaluate(evaluate::Arguments),
+    Completions(completions::Arguments),
+    Manual(manual::Arguments),
+}
+
+/// The whole command line, for completions and manual pages.
+fn definition() -> clap::Command {
+    Arguments::command()
+}
 
 /// Runs the command that `words` (program name first) ask for.
 ///
@@ -36,6 +49,10 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     };
     let arguments = Arguments::from_arg_matches(&matches)
         .map_err(|error| Error::input(error.to_string().trim_end().to_string()))?;
-    let _console = Console::standard();
-    match arguments.command {}
+    let console = Console::standard();
+    match arguments.command {
+        Command::Evaluate(arguments) => evaluate::run(&arguments, &console),
+        Command::Completions(arguments) => completions::run(&arguments, &console),
+        Command::Manual(arguments) => manual::run(&arguments, &console),
+    }
 }

@@ -3,6 +3,7 @@
 
 pub mod coupling;
 pub mod expression;
+pub mod finite;
 pub mod interval;
 pub mod numbers;
 pub mod resummation;

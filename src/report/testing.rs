@@ -12,7 +12,6 @@ macro_rules! published {
 
 published!(konishi, "L04M02.json");
 published!(konishi_ten_loops, "L04M02-ten-loops.json");
-published!(five, "L05M02.json");
 published!(six, "L06M03.json");
 published!(two_orbits, "L07M02.json");
 published!(pair, "L07M03.json");
