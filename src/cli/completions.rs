@@ -5,7 +5,9 @@ use crate::error::Result;
 
 /// Completions for a shell, to standard output.
 #[derive(clap::Args)]
-#[command(after_help = "Example:\n  loopladder completions bash > ~/.local/share/bash-completion/completions/loopladder")]
+#[command(
+    after_help = "Example:\n  loopladder completions bash > ~/.local/share/bash-completion/completions/loopladder"
+)]
 pub struct Arguments {
     /// The shell
     #[arg(value_enum)]

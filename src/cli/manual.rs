@@ -27,10 +27,12 @@ pub fn run(arguments: &Arguments, console: &Console) -> Result<()> {
         return console.result(&page(command)?);
     };
     std::fs::create_dir_all(directory).map_err(|cause| {
-        Error::io(format!("cannot create the directory {}; check its parent and permissions", directory.display()), cause)
+        Error::io(
+            format!("cannot create the directory {}; check its parent and permissions", directory.display()),
+            cause,
+        )
     })?;
-    let pages: Vec<clap::Command> =
-        command.get_subcommands().filter(|sub| sub.get_name() != "help").cloned().collect();
+    let pages: Vec<clap::Command> = command.get_subcommands().filter(|sub| sub.get_name() != "help").cloned().collect();
     for sub in pages {
         let name = format!("loopladder-{}", sub.get_name());
         let text = page(sub)?;

@@ -4,6 +4,7 @@ mod completions;
 mod console;
 mod evaluate;
 mod manual;
+mod plot;
 mod reading;
 
 use crate::error::{Error, Result};
@@ -24,6 +25,7 @@ struct Arguments {
 #[derive(Subcommand)]
 enum Command {
     Evaluate(evaluate::Arguments),
+    Plot(plot::Arguments),
     Completions(completions::Arguments),
     Manual(manual::Arguments),
 }
@@ -52,6 +54,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     let console = Console::standard();
     match arguments.command {
         Command::Evaluate(arguments) => evaluate::run(&arguments, &console),
+        Command::Plot(arguments) => plot::run(&arguments, &console),
         Command::Completions(arguments) => completions::run(&arguments, &console),
         Command::Manual(arguments) => manual::run(&arguments, &console),
     }

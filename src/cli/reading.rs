@@ -3,6 +3,7 @@
 use super::Console;
 use crate::error::{Error, Result};
 use crate::record::{Record, read};
+use crate::report::coupling::Coupling;
 use std::path::Path;
 
 /// Output for people or for programs.
@@ -29,4 +30,15 @@ pub fn record_of(
         (Some(path), _, _) => read(path),
         _ => Err(Error::input(format!("family ({length:?}, {magnons:?}): give --from FILE with its record"))),
     }
+}
+
+/// The coupling a word names, for clap.
+///
+/// # Errors
+/// An unknown word; the message lists the known ones.
+pub fn coupling(word: &str) -> std::result::Result<Coupling, String> {
+    Coupling::from_word(word).ok_or_else(|| {
+        let words: Vec<&str> = Coupling::ALL.iter().map(|coupling| coupling.word()).collect();
+        format!("not a coupling known here; give one of {}", words.join(", "))
+    })
 }

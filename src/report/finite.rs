@@ -171,7 +171,11 @@ pub fn estimates(
                 found.push(Estimate {
                     label: orbit.label.clone(),
                     state: (state + 1, numbers.states()),
-                    omega: if numbers.states() == 1 { orbit.states[0].omega.clone() } else { numbers.omega_decimal(state, 12)? },
+                    omega: if numbers.states() == 1 {
+                        orbit.states[0].omega.clone()
+                    } else {
+                        numbers.omega_decimal(state, 12)?
+                    },
                     length: record.length,
                     given: point.given.clone(),
                     g: h.clone().sqrt(),
@@ -241,7 +245,10 @@ pub fn text(estimates: &[Estimate], digits: Option<usize>) -> String {
         ));
         let outside = if estimate.g >= RADIUS_G { "   beyond its radius of convergence, g = 1/4" } else { "" };
         let mut row = |name: &str, value: String, note: &str| {
-            text.push_str(&format!("  {name}{}{value}{note}\n", " ".repeat(24usize.saturating_sub(name.chars().count()))));
+            text.push_str(&format!(
+                "  {name}{}{value}{note}\n",
+                " ".repeat(24usize.saturating_sub(name.chars().count()))
+            ));
         };
         row("partial sum", delta(estimate, &sums.partial, digits), outside);
         for pade in &sums.pade {
@@ -340,7 +347,9 @@ mod tests {
 
     #[test]
     fn the_same_coupling_in_every_parameter() {
-        for text in ["g=0.1", "g^2=1/100", "lambda/8pi^2=0.02", "lambda/pi^2=0.16", "lambda=1.5791367041742973790135185599802"] {
+        for text in
+            ["g=0.1", "g^2=1/100", "lambda/8pi^2=0.02", "lambda/pi^2=0.16", "lambda=1.5791367041742973790135185599802"]
+        {
             let h = Point::parse(text).unwrap().h(90);
             assert!((h.to_f64() - 0.01).abs() < 1e-17, "{text}: {h}");
         }
@@ -348,7 +357,9 @@ mod tests {
 
     #[test]
     fn mistakes_are_named() {
-        for (text, what) in [("0.1", "equals"), ("q=1", "unknown"), ("g=x", "cannot be read"), ("g=-1", "negative"), ("g=1e9", "above")] {
+        for (text, what) in
+            [("0.1", "equals"), ("q=1", "unknown"), ("g=x", "cannot be read"), ("g=-1", "negative"), ("g=1e9", "above")]
+        {
             let error = Point::parse(text).unwrap_err();
             assert!(error.to_string().contains(what), "{error}");
         }

@@ -6,6 +6,7 @@ pub mod expression;
 pub mod finite;
 pub mod interval;
 pub mod numbers;
+pub mod plot;
 pub mod resummation;
 pub mod roots;
 pub mod text;

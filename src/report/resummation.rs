@@ -72,7 +72,11 @@ pub fn sum(gamma: &[Interval], h: &Float) -> Sums {
     let mapped = horner(&c, &z) * &z;
     let pade = pade_pairs(loops)
         .into_iter()
-        .map(|(numerator, denominator)| Pade { numerator, denominator, value: pade(&middle, numerator, denominator, h) })
+        .map(|(numerator, denominator)| Pade {
+            numerator,
+            denominator,
+            value: pade(&middle, numerator, denominator, h),
+        })
         .collect::<Vec<_>>();
     let mut last = Float::new(bits);
     for term in c.iter().rev().take(2) {
@@ -116,9 +120,7 @@ fn mapped_powers(loops: usize, bits: u32) -> Vec<Vec<Float>> {
     for n in 1..loops {
         let previous = &rows[n - 1];
         let row = (0..=loops)
-            .map(|k| {
-                (0..=k).fold(Float::new(bits), |sum, i| sum + Float::with_val(bits, &previous[i] * &base[k - i]))
-            })
+            .map(|k| (0..=k).fold(Float::new(bits), |sum, i| sum + Float::with_val(bits, &previous[i] * &base[k - i])))
             .collect();
         rows.push(row);
     }
@@ -151,9 +153,8 @@ fn pade(gamma: &[Float], numerator: usize, denominator: usize, h: &Float) -> Opt
     q.extend(solve(&mut rows)?);
     let p: Vec<Float> = (0..=numerator)
         .map(|k| {
-            (0..=k.min(denominator)).fold(Float::new(bits), |sum, j| {
-                sum + Float::with_val(bits, &q[j] * series(k as isize - j as isize))
-            })
+            (0..=k.min(denominator))
+                .fold(Float::new(bits), |sum, j| sum + Float::with_val(bits, &q[j] * series(k as isize - j as isize)))
         })
         .collect();
     // A pole between 0 and h makes the value meaningless.
@@ -210,9 +211,8 @@ mod tests {
         let constants = Constants::default();
         let orbit = &record.orbits[0];
         let numbers = Numbers::new(orbit, &constants).unwrap();
-        let gamma: Vec<Interval> = (1..=loops)
-            .map(|n| numbers.coefficient(orbit.coefficient(n).unwrap(), 0, BITS).unwrap())
-            .collect();
+        let gamma: Vec<Interval> =
+            (1..=loops).map(|n| numbers.coefficient(orbit.coefficient(n).unwrap(), 0, BITS).unwrap()).collect();
         sum(&gamma, &Float::with_val(BITS, g.square()))
     }
 
@@ -234,7 +234,11 @@ mod tests {
             for loops in 2..=10 {
                 let sums = sums(&record, loops, g.clone());
                 let distance = Float::with_val(BITS, &sums.mapped - &exact).abs();
-                assert!(distance <= sums.error, "{loops} loops at g = {g}: off by {distance:.3e}, said {:.3e}", sums.error);
+                assert!(
+                    distance <= sums.error,
+                    "{loops} loops at g = {g}: off by {distance:.3e}, said {:.3e}",
+                    sums.error
+                );
                 if loops == 4 {
                     assert!(sums.error < bounds[0], "{:.3e}", sums.error);
                 }
@@ -253,7 +257,7 @@ mod tests {
             binomial *= rational(3 - 2 * n, 2 * n) * rational(16, 1);
             coefficients.push(Interval::from_rational(&binomial, BITS));
         }
-        let sums = sum(&coefficients, &Float::with_val(BITS, 1) );
+        let sums = sum(&coefficients, &Float::with_val(BITS, 1));
         let exact = Float::with_val(BITS, 17).sqrt() - 1u32;
         let distance = Float::with_val(BITS, &sums.mapped - &exact).abs();
         assert!(distance < sums.error && sums.error < 0.1, "{distance:.3e} {:.3e}", sums.error);
