@@ -3,6 +3,7 @@
 mod completions;
 mod console;
 mod evaluate;
+mod export;
 mod manual;
 mod plot;
 mod reading;
@@ -25,6 +26,7 @@ struct Arguments {
 #[derive(Subcommand)]
 enum Command {
     Evaluate(evaluate::Arguments),
+    Export(export::Arguments),
     Plot(plot::Arguments),
     Completions(completions::Arguments),
     Manual(manual::Arguments),
@@ -54,6 +56,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     let console = Console::standard();
     match arguments.command {
         Command::Evaluate(arguments) => evaluate::run(&arguments, &console),
+        Command::Export(arguments) => export::run(&arguments, &console),
         Command::Plot(arguments) => plot::run(&arguments, &console),
         Command::Completions(arguments) => completions::run(&arguments, &console),
         Command::Manual(arguments) => manual::run(&arguments, &console),

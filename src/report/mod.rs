@@ -2,6 +2,7 @@
 //! Everything here sees result records only.
 
 pub mod coupling;
+pub mod export;
 pub mod expression;
 pub mod finite;
 pub mod interval;

@@ -165,7 +165,9 @@ fn draw(root: &DrawingArea<SVGBackend, Shift>, figure: &Figure) -> std::result::
         .y_label_formatter(&y_text)
         .label_style(style(15))
         .axis_desc_style(style(17))
-        .bold_line_style(RGBColor(225, 225, 225))
+        .axis_style(BLACK.stroke_width(FINE))
+        .set_all_tick_mark_size(px(5))
+        .bold_line_style(RGBColor(225, 225, 225).stroke_width(FINE))
         .light_line_style(WHITE)
         .draw()?;
     for curve in figure.curves.iter().filter(|curve| !curve.band.is_empty()) {
