@@ -13,3 +13,4 @@ pub mod finite_size;
 pub mod lift;
 pub mod observer;
 pub mod record;
+pub mod report;

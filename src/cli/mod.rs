@@ -1,7 +1,16 @@
 //! The command line: arguments become one validated request per command; no other stage sees clap.
 
+<<<<<<< HEAD
 mod audit;
+=======
+mod completions;
+>>>>>>> report
 mod console;
+mod evaluate;
+mod export;
+mod manual;
+mod plot;
+mod reading;
 
 use crate::error::{Error, Result};
 use clap::{CommandFactory as _, FromArgMatches as _, Parser, Subcommand};
@@ -20,7 +29,20 @@ struct Arguments {
 /// One variant per command, one file per variant.
 #[derive(Subcommand)]
 enum Command {
+<<<<<<< HEAD
     Audit(audit::Arguments),
+=======
+    Evaluate(evaluate::Arguments),
+    Export(export::Arguments),
+    Plot(plot::Arguments),
+    Completions(completions::Arguments),
+    Manual(manual::Arguments),
+}
+
+/// The whole command line, for completions and manual pages.
+fn definition() -> clap::Command {
+    Arguments::command()
+>>>>>>> report
 }
 
 /// Runs the command that `words` (program name first) ask for.
@@ -41,6 +63,14 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
         .map_err(|error| Error::input(error.to_string().trim_end().to_string()))?;
     let console = Console::standard();
     match arguments.command {
+<<<<<<< HEAD
         Command::Audit(arguments) => audit::run(&arguments, &console),
+=======
+        Command::Evaluate(arguments) => evaluate::run(&arguments, &console),
+        Command::Export(arguments) => export::run(&arguments, &console),
+        Command::Plot(arguments) => plot::run(&arguments, &console),
+        Command::Completions(arguments) => completions::run(&arguments, &console),
+        Command::Manual(arguments) => manual::run(&arguments, &console),
+>>>>>>> report
     }
 }
