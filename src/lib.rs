@@ -11,4 +11,5 @@ pub mod finite_size;
 pub mod lift;
 pub mod observer;
 pub mod record;
+pub mod scan;
 pub mod cli;
