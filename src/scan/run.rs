@@ -210,7 +210,6 @@ pub fn run(
                 if let Outcome::Failed(error) = &outcome
                     && is_storage_failure(error)
                 {
-                    crew.stop.store(true, Ordering::SeqCst);
                     storage.get_or_insert(error.to_string());
                 }
                 let family = crew.items[index].task.family;
@@ -357,7 +356,12 @@ impl Crew {
             Ok(Progress::Written(records)) => Outcome::Computed { seconds: begin.elapsed().as_secs_f64(), records },
             Ok(Progress::WasThere) => Outcome::Elsewhere,
             Err(error) if error.kind() == Kind::Interrupted => Outcome::Interrupted,
-            Err(error) => Outcome::Failed(error),
+            Err(error) => {
+                if is_storage_failure(&error) {
+                    self.stop.store(true, Ordering::SeqCst);
+                }
+                Outcome::Failed(error)
+            }
         };
         let _ = results.send((index, outcome));
     }
