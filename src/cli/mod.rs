@@ -1,12 +1,15 @@
 //! The command line: arguments become one validated request per command; no other stage sees clap.
 
 mod console;
+pub mod interrupt;
+mod progress;
 
 use crate::error::{Error, Result};
 use clap::{CommandFactory as _, FromArgMatches as _, Parser, Subcommand};
 use std::ffi::OsString;
 
 pub use console::Console;
+pub use progress::Progress;
 
 /// Exact weak-coupling anomalous dimensions of the SU(2) sector of planar N=4 super Yang–Mills theory.
 #[derive(Parser)]
