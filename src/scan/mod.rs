@@ -9,6 +9,7 @@ mod journal;
 mod lock;
 mod place;
 mod plan;
+mod resources;
 mod run;
 mod shard;
 mod store;

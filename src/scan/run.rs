@@ -8,6 +8,7 @@
 use super::calculator::{Calculator, Cost};
 use super::lock::{self, Attempt};
 use super::plan::{Plan, Task};
+use super::resources::{Budget, Presence};
 use super::shard::{Shard, assign};
 use super::store::{Found, Store, is_storage_failure};
 use super::summary::{Outcome, Summary};
@@ -19,7 +20,7 @@ use std::collections::VecDeque;
 use std::path::PathBuf;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{RecvTimeoutError, Sender, channel};
-use std::sync::{Arc, Condvar, Mutex, PoisonError};
+use std::sync::{Arc, Mutex, PoisonError};
 use std::time::{Duration, Instant};
 
 /// From this estimate on (seconds on one core) a family gets all threads.
@@ -68,9 +69,9 @@ pub enum State {
 pub enum Step<'a> {
     /// The scan begins.
     Begun {
-        /// Families to compute, and families that are complete already.
+        /// Families to compute.
         families: usize,
-        /// The latter.
+        /// Families that are complete already.
         kept: usize,
         /// Estimated seconds on one core.
         seconds: f64,
@@ -217,7 +218,15 @@ pub fn run(
                 outcomes[index] = Some(outcome);
             }
             Err(RecvTimeoutError::Timeout) => {}
-            Err(RecvTimeoutError::Disconnected) => break,
+            Err(RecvTimeoutError::Disconnected) => {
+                // Every thread of the scan has ended.
+                handle.join().map_err(|_| {
+                    Error::check(
+                        "the scan's coordinating thread failed; everything finished is kept, and please report this",
+                    )
+                })?;
+                break;
+            }
         }
         if watcher.cancelled() && cancelled.get_or_insert_with(Instant::now).elapsed() > GRACE {
             break;
@@ -225,11 +234,6 @@ pub fn run(
     }
     for index in crew.running() {
         outcomes[index].get_or_insert(Outcome::Interrupted);
-    }
-    if handle.is_finished() && handle.join().is_err() {
-        return Err(Error::check(
-            "the scan's coordinating thread failed; everything finished is kept, and please report this",
-        ));
     }
     let interrupted = cancelled.is_some()
         && outcomes.iter().any(|o| !matches!(o, Some(Outcome::Computed { .. } | Outcome::Kept | Outcome::Elsewhere)));
@@ -268,6 +272,11 @@ impl Crew {
         self.one_by_one(long, results, &put_off);
         self.side_by_side(short, results, &put_off);
         let mut waiting = put_off.into_inner().unwrap_or_else(PoisonError::into_inner);
+        if !waiting.is_empty() && !self.over() {
+            let names: Vec<String> = waiting.iter().map(|&index| self.items[index].task.family.to_string()).collect();
+            let text = format!("waiting for another scan to finish {}", names.join(", "));
+            self.watcher.event(Event::Remark { text });
+        }
         while !waiting.is_empty() && !self.over() {
             let again = Mutex::new(Vec::new());
             self.one_by_one(waiting, results, &again);
@@ -371,101 +380,4 @@ fn pool(threads: usize) -> Result<rayon::ThreadPool> {
     rayon::ThreadPoolBuilder::new().num_threads(threads.max(1)).build().map_err(|cause| {
         Error::bound(format!("cannot start {threads} worker threads; ask for fewer with --threads")).because(cause)
     })
-}
-
-/// Memory shared out to the families in work.
-struct Budget {
-    limit: Option<u64>,
-    used: Mutex<u64>,
-    freed: Condvar,
-}
-
-/// A part of the budget, returned when dropped.
-struct Share<'a> {
-    budget: &'a Budget,
-    bytes: u64,
-}
-
-impl Budget {
-    fn new(limit: Option<u64>) -> Budget {
-        Budget { limit, used: Mutex::new(0), freed: Condvar::new() }
-    }
-
-    /// Waits until `bytes` fit beside the families in work.
-    fn take(&self, family: Family, bytes: u64, observer: &dyn Observer) -> Result<Share<'_>> {
-        let Some(limit) = self.limit else { return Ok(Share { budget: self, bytes: 0 }) };
-        if bytes > limit {
-            return Err(Error::bound(format!(
-                "the family {family} needs about {} even with one prime at a time, and the memory bound is {}; raise --memory or leave it out",
-                super::show_size(bytes),
-                super::show_size(limit)
-            )));
-        }
-        let mut used = self.used.lock().unwrap_or_else(PoisonError::into_inner);
-        let mut said = false;
-        while *used + bytes > limit {
-            observer.proceed()?;
-            if !said {
-                said = true;
-                observer.event(Event::Remark {
-                    text: format!("{family} waits for memory (bound {})", super::show_size(limit)),
-                });
-            }
-            used = self.freed.wait_timeout(used, POLL).unwrap_or_else(PoisonError::into_inner).0;
-        }
-        *used += bytes;
-        Ok(Share { budget: self, bytes })
-    }
-}
-
-impl Drop for Share<'_> {
-    fn drop(&mut self) {
-        *self.budget.used.lock().unwrap_or_else(PoisonError::into_inner) -= self.bytes;
-        self.budget.freed.notify_all();
-    }
-}
-
-/// Says to other scans that this one uses the directory. Only a scan that is alone removes what
-/// killed ones left behind.
-struct Presence {
-    file: Mutex<Option<std::fs::File>>,
-    path: PathBuf,
-}
-
-impl Presence {
-    fn enter(store: &Store, observer: &dyn Observer) -> Result<Presence> {
-        let path = store.work().join("scan.lock");
-        let failed = |cause| {
-            Error::io(format!("cannot create {}; check that the output directory is writable", path.display()), cause)
-        };
-        let file = std::fs::OpenOptions::new().write(true).create(true).truncate(false).open(&path).map_err(failed)?;
-        match file.try_lock() {
-            Ok(()) => {
-                store.clear_leftovers();
-                let _ = file.unlock();
-            }
-            Err(std::fs::TryLockError::WouldBlock) => observer.event(Event::Remark {
-                text: format!("another scan works in {}; this one takes the families that are free", store.directory().display()),
-            }),
-            Err(std::fs::TryLockError::Error(_)) => observer.event(Event::Remark {
-                text: format!(
-                    "the file system of {} has no locks: two scans at once may compute a family twice (results stay the same)",
-                    store.directory().display()
-                ),
-            }),
-        }
-        let _ = file.lock_shared();
-        Ok(Presence { file: Mutex::new(Some(file)), path })
-    }
-
-    /// The scan is over; the last one to leave clears up.
-    fn leave(&self, store: &Store) {
-        if let Some(file) = self.file.lock().unwrap_or_else(PoisonError::into_inner).take() {
-            let _ = file.unlock();
-            if file.try_lock().is_ok() {
-                let _ = std::fs::remove_file(&self.path);
-                store.remove_work();
-            }
-        }
-    }
 }
