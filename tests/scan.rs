@@ -5,12 +5,15 @@
 mod invented;
 #[path = "scan/place.rs"]
 mod place;
+#[path = "scan/process.rs"]
+mod process;
 
 use invented::{Invented, Watch};
 use loopladder::error::Kind;
 use loopladder::family::Family;
 use loopladder::scan::{Outcome, Plan, Settings, Shard, State, Summary, prepare, run, survey};
-use place::{TinyDisk, child, contents};
+use place::{TinyDisk, contents};
+use process::child;
 use std::path::Path;
 use std::sync::Arc;
 use std::sync::atomic::Ordering;
@@ -43,7 +46,7 @@ fn scan(plan: &str, directory: &Path, threads: usize) -> Summary {
 #[test]
 #[ignore = "started by other tests in a process of its own"]
 fn child_process() {
-    let Some(request) = place::request() else { return };
+    let Some(request) = process::request() else { return };
     let calculator = Arc::new(Invented::new(request.units, Duration::from_millis(request.pause)));
     let watch = Arc::new(Watch::default());
     let summary = scan_with(&request.plan, &settings(&request.directory, request.threads), None, &calculator, &watch);
@@ -338,12 +341,18 @@ fn a_full_disk_loses_nothing() {
     assert_eq!(contents(quiet.path()), contents(disk.path()));
 }
 
+fn remount(disk: &TinyDisk, mode: &str) {
+    let options = format!("remount,{mode}");
+    let status = std::process::Command::new("mount").args(["-o", &options]).arg(disk.path()).status().unwrap();
+    assert!(status.success());
+}
+
 #[test]
 fn a_read_only_directory_is_refused_and_complete_ones_are_still_read() {
     let Some(disk) = TinyDisk::mount("size=1m") else { return };
     scan("[[families]]\nlengths = \"4-6\"\n", disk.path(), 1).verdict().unwrap();
     let before = contents(disk.path());
-    disk.remount("ro");
+    remount(&disk, "ro");
     let calculator = Arc::new(Invented::new(3, MILLISECOND));
     let items = prepare(&Plan::parse(SMALL, "plan.toml").unwrap(), &*calculator, None);
     let error =
@@ -354,7 +363,7 @@ fn a_read_only_directory_is_refused_and_complete_ones_are_still_read() {
     // Everything is there already: no writing is needed, and the scan says so.
     let summary = scan("[[families]]\nlengths = \"4-6\"\n", disk.path(), 1);
     assert_eq!(summary.count(|outcome| matches!(outcome, Outcome::Kept)), 4);
-    disk.remount("rw");
+    remount(&disk, "rw");
     assert_eq!(before, contents(disk.path()));
     scan(SMALL, disk.path(), 1).verdict().unwrap();
 }

@@ -54,7 +54,8 @@ pub fn attempt(path: &Path) -> Result<Attempt> {
     }
 }
 
-fn open(path: &Path) -> std::io::Result<File> {
+/// Opens or creates a lock file, and its directory when missing.
+pub(super) fn open(path: &Path) -> std::io::Result<File> {
     let options = || OpenOptions::new().read(true).write(true).create(true).truncate(false).open(path);
     match options() {
         Err(cause) if cause.kind() == std::io::ErrorKind::NotFound => {
@@ -67,8 +68,9 @@ fn open(path: &Path) -> std::io::Result<File> {
     }
 }
 
+/// Whether the file opened is the one now at `path`.
 #[cfg(unix)]
-fn is_current(file: &File, path: &Path) -> bool {
+pub(super) fn is_current(file: &File, path: &Path) -> bool {
     use std::os::unix::fs::MetadataExt;
     match (file.metadata(), std::fs::metadata(path)) {
         (Ok(ours), Ok(there)) => ours.ino() == there.ino() && ours.dev() == there.dev(),
@@ -76,8 +78,9 @@ fn is_current(file: &File, path: &Path) -> bool {
     }
 }
 
+/// Whether there still is a file at `path`.
 #[cfg(not(unix))]
-fn is_current(_file: &File, path: &Path) -> bool {
+pub(super) fn is_current(_file: &File, path: &Path) -> bool {
     path.exists()
 }
 

@@ -38,8 +38,6 @@ pub struct Plan {
     pub memory: Option<u64>,
     /// Whether certificates are stored beside the records.
     pub certificates: bool,
-    /// Report formats written at the end.
-    pub export: Vec<String>,
     /// What to compute, ascending in (L, M).
     pub tasks: Vec<Task>,
 }
@@ -76,7 +74,7 @@ impl Filter {
     }
 }
 
-const TOP: [&str; 6] = ["output", "threads", "memory", "certificates", "export", "families"];
+const TOP: [&str; 5] = ["output", "threads", "memory", "certificates", "families"];
 const TABLE: [&str; 6] = ["lengths", "magnons", "loops", "max_primaries", "max_degree", "parity"];
 
 impl Plan {
@@ -126,9 +124,8 @@ impl Plan {
                 )
             })?,
         };
-        let export = get("export").map(|v| formats(source, v)).transpose()?.unwrap_or_default();
         let tasks = tasks(source, get("families"))?;
-        Ok(Plan { output, threads, memory, certificates, export, tasks })
+        Ok(Plan { output, threads, memory, certificates, tasks })
     }
 }
 
@@ -151,21 +148,6 @@ fn memory_of(source: Source, value: &Spanned<DeValue>) -> Result<u64> {
     }
     let text = text_of(source, "memory", value)?;
     values::parse_size(&text).map_err(|error| source.refuse(value.span().start, error.to_string()))
-}
-
-fn formats(source: Source, value: &Spanned<DeValue>) -> Result<Vec<String>> {
-    let Some(items) = value.get_ref().as_array() else {
-        return Err(source.refuse(value.span().start, "export is not a list; write for example [\"csv\"]"));
-    };
-    let mut formats = Vec::new();
-    for item in items.iter() {
-        let format = text_of(source, "export", item)?;
-        if formats.contains(&format) {
-            return Err(source.refuse(item.span().start, format!("export names \"{format}\" twice; remove one")));
-        }
-        formats.push(format);
-    }
-    Ok(formats)
 }
 
 /// Expands all [[families]] tables; a family asked for twice must be asked for in the same way.
@@ -328,14 +310,13 @@ mod tests {
     #[test]
     fn every_key_arrives() {
         let plan = Plan::parse(
-            "output = \"out\"\nthreads = 3\nmemory = \"2G\"\ncertificates = true\nexport = [\"csv\"]\n\
+            "output = \"out\"\nthreads = 3\nmemory = \"2G\"\ncertificates = true\n\
              [[families]]\nlengths = 8\nmagnons = 3\nloops = 5\nmax_degree = 2\nparity = \"paired\"\n",
             "plan.toml",
         )
         .unwrap();
         assert_eq!(plan.output, Some(PathBuf::from("out")));
         assert_eq!((plan.threads, plan.memory, plan.certificates), (Some(3), Some(2 << 30), true));
-        assert_eq!(plan.export, ["csv"]);
         let task = &plan.tasks[0];
         assert_eq!(task.limit, Some(5));
         assert!(task.filter.admits(2, Parity::Paired) && !task.filter.admits(3, Parity::Paired));

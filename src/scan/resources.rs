@@ -1,10 +1,12 @@
 //! What the families of one scan share, and what scans on one directory share: memory and presence.
 
+use super::lock;
 use super::store::Store;
 use super::values::show_size;
 use crate::error::{Error, Result};
 use crate::family::Family;
 use crate::observer::{Event, Observer};
+use std::fs::TryLockError;
 use std::path::PathBuf;
 use std::sync::{Condvar, Mutex, PoisonError};
 use std::time::Duration;
@@ -70,36 +72,55 @@ pub(super) struct Presence {
 }
 
 impl Presence {
+    /// Enters the directory; alone in it, first clears up.
+    ///
+    /// # Errors
+    /// The file cannot be created.
     pub fn enter(store: &Store, observer: &dyn Observer) -> Result<Presence> {
         let path = store.work().join("scan.lock");
         let failed = |cause| {
             Error::io(format!("cannot create {}; check that the output directory is writable", path.display()), cause)
         };
-        let file = std::fs::OpenOptions::new().write(true).create(true).truncate(false).open(&path).map_err(failed)?;
-        match file.try_lock() {
-            Ok(()) => {
-                store.clear_leftovers();
-                let _ = file.unlock();
-            }
-            Err(std::fs::TryLockError::WouldBlock) => observer.event(Event::Remark {
-                text: format!("another scan works in {}; this one takes the families that are free", store.directory().display()),
-            }),
-            Err(std::fs::TryLockError::Error(_)) => observer.event(Event::Remark {
-                text: format!(
+        loop {
+            let file = lock::open(&path).map_err(failed)?;
+            let remark = match file.try_lock() {
+                Ok(()) if !lock::is_current(&file, &path) => continue,
+                Ok(()) => {
+                    store.clear_leftovers();
+                    let _ = file.unlock();
+                    None
+                }
+                Err(TryLockError::WouldBlock) => Some(format!(
+                    "another scan works in {}; this one takes the families that are free",
+                    store.directory().display()
+                )),
+                Err(TryLockError::Error(_)) => Some(format!(
                     "the file system of {} has no locks: two scans at once may compute a family twice (results stay the same)",
                     store.directory().display()
-                ),
-            }),
+                )),
+            };
+            // Waits at most for somebody who clears up, which takes a moment. Whoever left last has
+            // removed the file meanwhile; then this lock is on a file that nobody else can see.
+            if file.lock_shared().is_ok() && !lock::is_current(&file, &path) {
+                continue;
+            }
+            if let Some(text) = remark {
+                observer.event(Event::Remark { text });
+            }
+            return Ok(Presence { file: Mutex::new(Some(file)), path });
         }
-        let _ = file.lock_shared();
-        Ok(Presence { file: Mutex::new(Some(file)), path })
     }
 
     /// The scan is over; the last one to leave clears up.
     pub fn leave(&self, store: &Store) {
         if let Some(file) = self.file.lock().unwrap_or_else(PoisonError::into_inner).take() {
             let _ = file.unlock();
-            if file.try_lock().is_ok() {
+            let alone = match file.try_lock() {
+                Ok(()) => lock::is_current(&file, &self.path),
+                Err(TryLockError::WouldBlock) => false,
+                Err(TryLockError::Error(_)) => true,
+            };
+            if alone {
                 let _ = std::fs::remove_file(&self.path);
                 store.remove_work();
             }

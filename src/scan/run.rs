@@ -130,11 +130,18 @@ pub fn survey(items: &[Item], settings: &Settings) -> Result<Vec<State>> {
     items
         .iter()
         .map(|item| {
-            Ok(match store.examine(item.task.family, None, item.loops, settings.certificates)? {
-                Found::Complete => State::Complete,
-                Found::Missing | Found::Short(_) => State::ToCompute,
-                Found::Damaged { path, .. } => State::Damaged(path),
-            })
+            Ok(
+                match store.examine(
+                    item.task.family,
+                    None,
+                    item.loops,
+                    settings.certificates && !item.task.family.is_protected(),
+                )? {
+                    Found::Complete => State::Complete,
+                    Found::Missing | Found::Short(_) => State::ToCompute,
+                    Found::Damaged { path, .. } => State::Damaged(path),
+                },
+            )
         })
         .collect()
 }
@@ -158,7 +165,12 @@ pub fn run(
     let mut outcomes: Vec<Option<Outcome>> = Vec::new();
     for item in &items {
         // An unreadable file is met again, and reported, when the family's turn comes.
-        let found = store.examine(item.task.family, None, item.loops, settings.certificates);
+        let found = store.examine(
+            item.task.family,
+            None,
+            item.loops,
+            settings.certificates && !item.task.family.is_protected(),
+        );
         outcomes.push(matches!(found, Ok(Found::Complete)).then_some(Outcome::Kept));
     }
     let todo: Vec<usize> = (0..items.len()).filter(|&index| outcomes[index].is_none()).collect();

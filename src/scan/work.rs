@@ -42,7 +42,7 @@ pub(super) fn complete_family(order: &Order) -> Result<Progress> {
         "{} {family} through loop {}, certificate {}",
         crate::record::PROGRAM,
         order.item.loops,
-        order.settings.certificates
+        wants_certificate(order)
     );
     let journal = Journal::open(&order.store.work_file(family, "units"), &subject);
     (order.started)(journal.len());
@@ -82,11 +82,16 @@ fn one(order: &Order, journal: &Journal, orbit: Option<&str>, earlier: Option<Bo
         family,
         loops: order.item.loops,
         orbit: orbit.map(str::to_string),
-        certificate: order.settings.certificates,
+        certificate: wants_certificate(order),
     };
     let product = order.calculator.compute(&job, order.settings.memory, journal, order.observer)?;
     let path = order.store.record_path(family, orbit);
     order.store.write(&path, &product.record, product.certificate.as_deref(), earlier.as_deref())
+}
+
+/// The protected family has no pair to certify.
+fn wants_certificate(order: &Order) -> bool {
+    order.settings.certificates && !order.item.task.family.is_protected()
 }
 
 enum Look {
@@ -98,7 +103,7 @@ enum Look {
 /// What is there; damaged files are moved aside, and that is said.
 fn look(order: &Order, orbit: Option<&str>) -> Result<Look> {
     loop {
-        match order.store.examine(order.item.task.family, orbit, order.item.loops, order.settings.certificates)? {
+        match order.store.examine(order.item.task.family, orbit, order.item.loops, wants_certificate(order))? {
             Found::Complete => return Ok(Look::Complete),
             Found::Missing => return Ok(Look::Needed(None)),
             Found::Short(record) => return Ok(Look::Needed(Some(record))),
