@@ -14,3 +14,4 @@ pub mod lift;
 pub mod observer;
 pub mod record;
 pub mod report;
+pub mod scan;

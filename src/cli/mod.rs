@@ -1,22 +1,24 @@
 //! The command line: arguments become one validated request per command; no other stage sees clap.
 
-<<<<<<< HEAD
 mod audit;
-=======
+mod census;
 mod completions;
->>>>>>> report
 mod console;
 mod evaluate;
 mod export;
+pub mod interrupt;
 mod manual;
 mod plot;
+mod progress;
 mod reading;
+mod series;
 
 use crate::error::{Error, Result};
 use clap::{CommandFactory as _, FromArgMatches as _, Parser, Subcommand};
 use std::ffi::OsString;
 
 pub use console::Console;
+pub use progress::Progress;
 
 /// Exact weak-coupling anomalous dimensions of the SU(2) sector of planar N=4 super Yang–Mills theory.
 #[derive(Parser)]
@@ -29,9 +31,9 @@ struct Arguments {
 /// One variant per command, one file per variant.
 #[derive(Subcommand)]
 enum Command {
-<<<<<<< HEAD
+    Series(series::Arguments),
+    Census(census::Arguments),
     Audit(audit::Arguments),
-=======
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
     Plot(plot::Arguments),
@@ -42,7 +44,6 @@ enum Command {
 /// The whole command line, for completions and manual pages.
 fn definition() -> clap::Command {
     Arguments::command()
->>>>>>> report
 }
 
 /// Runs the command that `words` (program name first) ask for.
@@ -62,15 +63,30 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     let arguments = Arguments::from_arg_matches(&matches)
         .map_err(|error| Error::input(error.to_string().trim_end().to_string()))?;
     let console = Console::standard();
-    match arguments.command {
-<<<<<<< HEAD
-        Command::Audit(arguments) => audit::run(&arguments, &console),
-=======
-        Command::Evaluate(arguments) => evaluate::run(&arguments, &console),
-        Command::Export(arguments) => export::run(&arguments, &console),
-        Command::Plot(arguments) => plot::run(&arguments, &console),
-        Command::Completions(arguments) => completions::run(&arguments, &console),
-        Command::Manual(arguments) => manual::run(&arguments, &console),
->>>>>>> report
+    match &arguments.command {
+        Command::Series(arguments) => series::run(arguments, &console),
+        Command::Census(arguments) => census::run(arguments, &console),
+        Command::Audit(arguments) => audit::run(arguments, &console),
+        Command::Evaluate(arguments) => evaluate::run(arguments, &console),
+        Command::Export(arguments) => export::run(arguments, &console),
+        Command::Plot(arguments) => plot::run(arguments, &console),
+        Command::Completions(arguments) => completions::run(arguments, &console),
+        Command::Manual(arguments) => manual::run(arguments, &console),
     }
+}
+
+/// Runs `work` in a pool of this many threads (all cores when not given), with its own observer.
+///
+/// # Errors
+/// Zero or absurdly many threads, or what `work` fails with.
+fn in_pool<T: Send>(threads: Option<usize>, work: impl FnOnce() -> Result<T> + Send) -> Result<T> {
+    let count = threads.unwrap_or(0);
+    if threads == Some(0) || count > 4096 {
+        return Err(Error::input(format!("--threads {count} is not between 1 and 4096; leave it out to use all cores")));
+    }
+    let pool = rayon::ThreadPoolBuilder::new()
+        .num_threads(count)
+        .build()
+        .map_err(|cause| Error::bound("cannot start the threads; give a smaller --threads").because(cause))?;
+    pool.install(work)
 }

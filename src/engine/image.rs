@@ -10,7 +10,7 @@ use crate::algebra::ring::Ring;
 use crate::baxter;
 use crate::chain::Orbit;
 use crate::chain::orbit::OneLoopImage;
-use crate::error::{Kind, Result};
+use crate::error::{Error, Kind, Result};
 use crate::finite_size;
 use crate::lift::{self, Lift};
 use crate::record::Parity;
@@ -186,4 +186,21 @@ fn independent_rows(field: &PrimeField, columns: &[Vec<u64>]) -> Option<Vec<usiz
         rows.push(row);
     }
     Some(rows)
+}
+
+/// Whether ±½ are Bethe roots at one loop, from the first prime that is not a bad one.
+///
+/// # Errors
+/// A Baxter equation without solution, or nothing but bad primes.
+pub fn is_singular(orbit: &Orbit) -> Result<bool> {
+    for index in 0..8 {
+        let field = PrimeField::nth(index);
+        let ring = Quotient::new(field, orbit.field.iter().map(|c| field.image(c)).collect());
+        let evaluate = |p: &[Integer]| ring.element(&p.iter().map(|c| field.image(c)).collect::<Vec<u64>>());
+        if let Ok(start) = orbit.image(&ring, evaluate) {
+            let pair = baxter::one_loop(&ring, orbit.family, &start.transfer)?;
+            return Ok(lift::charges::is_singular(&ring, &pair.q1));
+        }
+    }
+    Err(Error::check(format!("orbit {}: every prime tried is a bad one; please report this family", orbit.label)))
 }

@@ -120,3 +120,15 @@ pub fn compute(
     let certificate = if request.certificate { Some(assemble::certificate(request, &grading, &lifted)?) } else { None };
     Ok(Outcome { record, certificate })
 }
+
+/// The orbits of a family at one loop, without coefficients.
+///
+/// # Errors
+/// As [`chain::spectrum`].
+pub fn outline(family: Family, observer: &dyn Observer) -> Result<Vec<crate::record::Orbit>> {
+    if family.is_protected() {
+        return Ok(assemble::protected(family, 0).orbits);
+    }
+    let orbits = chain::spectrum(family, observer)?;
+    orbits.par_iter().map(|orbit| assemble::bare(orbit, image::is_singular(orbit)?)).collect()
+}

@@ -1,0 +1,27 @@
+//! Scans: many families from one plan, safe against interruption at any moment.
+//!
+//! A [`Plan`] says which families; [`prepare`] turns it into [`Item`]s with loop orders and costs and
+//! picks a shard; [`run`] computes what the results directory does not hold yet. What computes is a
+//! [`Calculator`].
+
+mod calculator;
+mod journal;
+mod lock;
+mod place;
+mod plan;
+mod resources;
+mod run;
+mod shard;
+mod store;
+mod summary;
+mod values;
+mod work;
+
+pub use calculator::{Calculator, Checkpoint, Cost, Job, OrbitOutline, Product};
+pub use journal::Journal;
+pub use plan::{Filter, Plan, Task};
+pub use run::{Item, Settings, State, Step, Watcher, prepare, run, survey};
+pub use shard::{Shard, assign};
+pub use store::{Found, Store, certificate_path};
+pub use summary::{Outcome, Summary};
+pub use values::{parse_range, parse_size, show_size, show_time};

@@ -1,0 +1,395 @@
+//! Running a plan: order, threads, memory, cancellation.
+//!
+//! Long families come first and one after the other, each on all threads; then the short ones, one
+//! thread each, as many at a time as threads and memory allow. Families locked by another scan are
+//! put off, and taken up at the end if that scan did not finish them. Results do not depend on any
+//! of this.
+
+use super::calculator::{Calculator, Cost};
+use super::lock::{self, Attempt};
+use super::plan::{Plan, Task};
+use super::resources::{Budget, Presence};
+use super::shard::{Shard, assign};
+use super::store::{Found, Store, is_storage_failure};
+use super::summary::{Outcome, Summary};
+use super::work::{Progress, complete_family};
+use crate::error::{Error, Kind, Result};
+use crate::family::Family;
+use crate::observer::{Event, Observer};
+use std::collections::VecDeque;
+use std::path::PathBuf;
+use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::mpsc::{RecvTimeoutError, Sender, channel};
+use std::sync::{Arc, Mutex, PoisonError};
+use std::time::{Duration, Instant};
+
+/// From this estimate on (seconds on one core) a family gets all threads.
+const LONG: f64 = 5.0;
+/// How long after a request to stop families may still end by themselves; then the scan ends without them.
+const GRACE: Duration = Duration::from_millis(1300);
+const POLL: Duration = Duration::from_millis(100);
+
+/// One family to be computed.
+#[derive(Clone, Debug)]
+pub struct Item {
+    /// What the plan says.
+    pub task: Task,
+    /// Through this loop order.
+    pub loops: usize,
+    /// The estimate.
+    pub cost: Cost,
+}
+
+/// How a plan is run.
+#[derive(Clone, Debug)]
+pub struct Settings {
+    /// Where the records are.
+    pub directory: PathBuf,
+    /// Worker threads, at least 1.
+    pub threads: usize,
+    /// Memory bound in bytes.
+    pub memory: Option<u64>,
+    /// Whether certificates are wanted.
+    pub certificates: bool,
+}
+
+/// What is there for an item before anything is computed.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum State {
+    /// The complete record.
+    Complete,
+    /// Nothing, or less than asked for.
+    ToCompute,
+    /// A damaged file, which a run would move aside.
+    Damaged(PathBuf),
+}
+
+/// What a scan reports beyond what families report themselves.
+#[derive(Debug)]
+pub enum Step<'a> {
+    /// The scan begins.
+    Begun {
+        /// Families to compute.
+        families: usize,
+        /// Families that are complete already.
+        kept: usize,
+        /// Estimated seconds on one core.
+        seconds: f64,
+        /// Worker threads.
+        threads: usize,
+    },
+    /// A family is taken up.
+    Started {
+        /// Which.
+        family: Family,
+        /// Through this loop order.
+        loops: usize,
+        /// Work units found from an earlier run.
+        units: usize,
+    },
+    /// A family is done with.
+    Finished {
+        /// Which.
+        family: Family,
+        /// What became of it.
+        outcome: &'a Outcome,
+        /// The estimate it had, in seconds.
+        estimate: f64,
+    },
+}
+
+/// Sees a scan from outside, and may stop it.
+pub trait Watcher: Observer + Send {
+    /// Something happened.
+    fn step(&self, step: Step<'_>);
+}
+
+/// The items of a plan, or of one shard of it, in the plan's order.
+pub fn prepare(plan: &Plan, calculator: &dyn Calculator, shard: Option<Shard>) -> Vec<Item> {
+    let items: Vec<Item> = plan
+        .tasks
+        .iter()
+        .map(|task| {
+            let complete = calculator.complete_through(task.family);
+            let loops = task.limit.map_or(complete, |limit| limit.min(complete));
+            Item { task: task.clone(), loops, cost: calculator.cost(task.family, loops) }
+        })
+        .collect();
+    let Some(shard) = shard else { return items };
+    let seconds: Vec<f64> = items.iter().map(|item| item.cost.seconds).collect();
+    let shards = assign(&seconds, shard.count);
+    items.into_iter().zip(shards).filter(|(_, place)| *place == shard.index).map(|(item, _)| item).collect()
+}
+
+/// What is there for every item.
+///
+/// # Errors
+/// A file exists and cannot be read.
+pub fn survey(items: &[Item], settings: &Settings) -> Result<Vec<State>> {
+    let store = Store::new(&settings.directory);
+    items
+        .iter()
+        .map(|item| {
+            Ok(
+                match store.examine(
+                    item.task.family,
+                    None,
+                    item.loops,
+                    settings.certificates && !item.task.family.is_protected(),
+                )? {
+                    Found::Complete => State::Complete,
+                    Found::Missing | Found::Short(_) => State::ToCompute,
+                    Found::Damaged { path, .. } => State::Damaged(path),
+                },
+            )
+        })
+        .collect()
+}
+
+/// Computes what the results directory does not hold yet.
+///
+/// A family that fails does not stop the others. A full disk or a directory that cannot be written
+/// to does. When the watcher cancels, families in work get a short while to end; then `run` returns
+/// without them, and their threads go on until they notice.
+///
+/// # Errors
+/// The directory cannot be used at all. Everything else is in the summary.
+pub fn run(
+    items: Vec<Item>,
+    settings: &Settings,
+    calculator: Arc<dyn Calculator>,
+    watcher: Arc<dyn Watcher>,
+) -> Result<Summary> {
+    let begin = Instant::now();
+    let store = Store::new(&settings.directory);
+    let mut outcomes: Vec<Option<Outcome>> = Vec::new();
+    for item in &items {
+        // An unreadable file is met again, and reported, when the family's turn comes.
+        let found = store.examine(
+            item.task.family,
+            None,
+            item.loops,
+            settings.certificates && !item.task.family.is_protected(),
+        );
+        outcomes.push(matches!(found, Ok(Found::Complete)).then_some(Outcome::Kept));
+    }
+    let todo: Vec<usize> = (0..items.len()).filter(|&index| outcomes[index].is_none()).collect();
+    let summary = |outcomes: Vec<Option<Outcome>>, interrupted, storage| Summary {
+        directory: settings.directory.clone(),
+        families: items
+            .iter()
+            .map(|item| item.task.family)
+            .zip(outcomes.into_iter().map(|o| o.unwrap_or(Outcome::NotStarted)))
+            .collect(),
+        seconds: begin.elapsed().as_secs_f64(),
+        interrupted,
+        storage,
+    };
+    watcher.step(Step::Begun {
+        families: todo.len(),
+        kept: items.len() - todo.len(),
+        seconds: todo.iter().map(|&index| items[index].cost.seconds).sum(),
+        threads: settings.threads,
+    });
+    if todo.is_empty() {
+        return Ok(summary(outcomes, false, None));
+    }
+
+    store.prepare()?;
+    let presence = Presence::enter(&store, &*watcher)?;
+    let (sender, receiver) = channel();
+    let crew = Arc::new(Crew {
+        items: items.clone(),
+        settings: settings.clone(),
+        store: store.clone(),
+        calculator,
+        watcher: Arc::clone(&watcher),
+        budget: Budget::new(settings.memory),
+        stop: AtomicBool::new(false),
+        running: Mutex::new(Vec::new()),
+        presence,
+    });
+    let handle = {
+        let crew = Arc::clone(&crew);
+        std::thread::spawn(move || crew.work(todo, &sender))
+    };
+
+    let mut storage = None;
+    let mut cancelled: Option<Instant> = None;
+    loop {
+        match receiver.recv_timeout(POLL) {
+            Ok((index, outcome)) => {
+                let outcome: Outcome = outcome;
+                if let Outcome::Failed(error) = &outcome
+                    && is_storage_failure(error)
+                {
+                    storage.get_or_insert(error.to_string());
+                }
+                let family = crew.items[index].task.family;
+                watcher.step(Step::Finished { family, outcome: &outcome, estimate: crew.items[index].cost.seconds });
+                outcomes[index] = Some(outcome);
+            }
+            Err(RecvTimeoutError::Timeout) => {}
+            Err(RecvTimeoutError::Disconnected) => {
+                // Every thread of the scan has ended.
+                handle.join().map_err(|_| {
+                    Error::check(
+                        "the scan's coordinating thread failed; everything finished is kept, and please report this",
+                    )
+                })?;
+                break;
+            }
+        }
+        if watcher.cancelled() && cancelled.get_or_insert_with(Instant::now).elapsed() > GRACE {
+            break;
+        }
+    }
+    for index in crew.running() {
+        outcomes[index].get_or_insert(Outcome::Interrupted);
+    }
+    let interrupted = cancelled.is_some()
+        && outcomes.iter().any(|o| !matches!(o, Some(Outcome::Computed { .. } | Outcome::Kept | Outcome::Elsewhere)));
+    Ok(summary(outcomes, interrupted, storage))
+}
+
+/// Shared by the threads of one scan.
+struct Crew {
+    items: Vec<Item>,
+    settings: Settings,
+    store: Store,
+    calculator: Arc<dyn Calculator>,
+    watcher: Arc<dyn Watcher>,
+    budget: Budget,
+    stop: AtomicBool,
+    running: Mutex<Vec<usize>>,
+    presence: Presence,
+}
+
+type Results = Sender<(usize, Outcome)>;
+
+impl Crew {
+    fn running(&self) -> Vec<usize> {
+        self.running.lock().unwrap_or_else(PoisonError::into_inner).clone()
+    }
+
+    fn over(&self) -> bool {
+        self.stop.load(Ordering::SeqCst) || self.watcher.cancelled()
+    }
+
+    fn work(&self, mut todo: Vec<usize>, results: &Results) {
+        todo.sort_by(|&a, &b| self.items[b].cost.seconds.total_cmp(&self.items[a].cost.seconds).then(a.cmp(&b)));
+        let (long, short): (Vec<usize>, Vec<usize>) =
+            todo.into_iter().partition(|&index| self.items[index].cost.seconds >= LONG || self.settings.threads == 1);
+        let put_off = Mutex::new(Vec::new());
+        self.one_by_one(long, results, &put_off);
+        self.side_by_side(short, results, &put_off);
+        let mut waiting = put_off.into_inner().unwrap_or_else(PoisonError::into_inner);
+        if !waiting.is_empty() && !self.over() {
+            let names: Vec<String> = waiting.iter().map(|&index| self.items[index].task.family.to_string()).collect();
+            let text = format!("waiting for another scan to finish {}", names.join(", "));
+            self.watcher.event(Event::Remark { text });
+        }
+        while !waiting.is_empty() && !self.over() {
+            let again = Mutex::new(Vec::new());
+            self.one_by_one(waiting, results, &again);
+            waiting = again.into_inner().unwrap_or_else(PoisonError::into_inner);
+            std::thread::sleep(POLL);
+        }
+        self.presence.leave(&self.store);
+    }
+
+    fn one_by_one(&self, items: Vec<usize>, results: &Results, put_off: &Mutex<Vec<usize>>) {
+        if items.is_empty() {
+            return;
+        }
+        let pool = match pool(self.settings.threads) {
+            Ok(pool) => pool,
+            Err(error) => return self.all_fail(items, &error, results),
+        };
+        for index in items {
+            if self.over() {
+                return;
+            }
+            self.one(index, &pool, results, put_off);
+        }
+    }
+
+    fn side_by_side(&self, items: Vec<usize>, results: &Results, put_off: &Mutex<Vec<usize>>) {
+        let threads = self.settings.threads.min(items.len());
+        let queue = Mutex::new(VecDeque::from(items));
+        let take = || queue.lock().unwrap_or_else(PoisonError::into_inner).pop_front();
+        std::thread::scope(|scope| {
+            for _ in 0..threads {
+                scope.spawn(|| {
+                    let pool = pool(1);
+                    while !self.over()
+                        && let Some(index) = take()
+                    {
+                        match &pool {
+                            Ok(pool) => self.one(index, pool, results, put_off),
+                            Err(error) => self.all_fail(vec![index], error, results),
+                        }
+                    }
+                });
+            }
+        });
+    }
+
+    fn all_fail(&self, items: Vec<usize>, error: &Error, results: &Results) {
+        for index in items {
+            let _ = results.send((index, Outcome::Failed(Error::new(error.kind(), error.chain()))));
+        }
+    }
+
+    /// Computes one item, or puts it off when another scan has it.
+    fn one(&self, index: usize, pool: &rayon::ThreadPool, results: &Results, put_off: &Mutex<Vec<usize>>) {
+        let item = &self.items[index];
+        let family = item.task.family;
+        let begin = Instant::now();
+        let lock = match lock::attempt(&self.store.work_file(family, "lock")) {
+            Ok(Attempt::Busy) => {
+                put_off.lock().unwrap_or_else(PoisonError::into_inner).push(index);
+                return;
+            }
+            Ok(Attempt::Held(lock)) => Some(lock),
+            Ok(Attempt::Unsupported) => None,
+            Err(error) => {
+                let _ = results.send((index, Outcome::Failed(error)));
+                return;
+            }
+        };
+        self.running.lock().unwrap_or_else(PoisonError::into_inner).push(index);
+        let report = |units| self.watcher.step(Step::Started { family, loops: item.loops, units });
+        let result = self.budget.take(family, item.cost.bytes, &*self.watcher).and_then(|_share| {
+            complete_family(&super::work::Order {
+                item,
+                settings: &self.settings,
+                store: &self.store,
+                calculator: &*self.calculator,
+                observer: &*self.watcher,
+                pool,
+                started: &report,
+            })
+        });
+        drop(lock);
+        self.running.lock().unwrap_or_else(PoisonError::into_inner).retain(|&other| other != index);
+        let outcome = match result {
+            Ok(Progress::Written(records)) => Outcome::Computed { seconds: begin.elapsed().as_secs_f64(), records },
+            Ok(Progress::WasThere) => Outcome::Elsewhere,
+            Err(error) if error.kind() == Kind::Interrupted => Outcome::Interrupted,
+            Err(error) => {
+                if is_storage_failure(&error) {
+                    self.stop.store(true, Ordering::SeqCst);
+                }
+                Outcome::Failed(error)
+            }
+        };
+        let _ = results.send((index, outcome));
+    }
+}
+
+fn pool(threads: usize) -> Result<rayon::ThreadPool> {
+    rayon::ThreadPoolBuilder::new().num_threads(threads.max(1)).build().map_err(|cause| {
+        Error::bound(format!("cannot start {threads} worker threads; ask for fewer with --threads")).because(cause)
+    })
+}
