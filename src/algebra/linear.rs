@@ -18,8 +18,11 @@ pub enum Solution<E> {
 /// Solves `rows · x = right` by Gauss–Jordan elimination; rows·columns·rank multiplications.
 pub fn solve<R: Ring>(ring: &R, rows: &[Vec<R::Elem>], right: &[R::Elem]) -> Solution<R::Elem> {
     let columns = rows.first().map_or(0, Vec::len);
-    let mut work: Vec<Vec<R::Elem>> =
-        rows.iter().zip(right).map(|(row, b)| row.iter().cloned().chain(std::iter::once(b.clone())).collect()).collect();
+    let mut work: Vec<Vec<R::Elem>> = rows
+        .iter()
+        .zip(right)
+        .map(|(row, b)| row.iter().cloned().chain(std::iter::once(b.clone())).collect())
+        .collect();
     let mut pivots: Vec<usize> = Vec::new();
     for column in 0..columns {
         let top = pivots.len();

@@ -6,7 +6,7 @@
 use super::flint::{self, Remaindering};
 use super::prime_field::PrimeField;
 use super::ring::Ring;
-use rayon::iter::{IntoParallelRefMutIterator, ParallelIterator, IndexedParallelIterator};
+use rayon::iter::{IndexedParallelIterator, IntoParallelRefMutIterator, ParallelIterator};
 use rug::{Integer, Rational};
 
 /// How many primes are kept for the check.

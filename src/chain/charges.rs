@@ -7,6 +7,8 @@
 //! Source: the boost operator (Tetelman 1982; common practice for the Heisenberg chain).
 
 use super::necklace::{Configuration, Necklaces, exchange};
+use super::transfer;
+use rayon::iter::{IntoParallelIterator, ParallelIterator};
 
 /// One row for each necklace: the entries (column, weight) that are not zero.
 #[derive(Clone, Debug)]
@@ -72,7 +74,10 @@ impl Sparse {
 
     /// The matrix times a vector of integers.
     pub fn apply(&self, vector: &[i128]) -> Vec<i128> {
-        self.rows.iter().map(|row| row.iter().map(|(column, weight)| i128::from(*weight) * vector[*column]).sum()).collect()
+        self.rows
+            .iter()
+            .map(|row| row.iter().map(|(column, weight)| i128::from(*weight) * vector[*column]).sum())
+            .collect()
     }
 }
 
@@ -119,11 +124,28 @@ pub fn fourth(necklaces: &Necklaces) -> Sparse {
     Sparse::new(necklaces, &words)
 }
 
+/// T(v) at v = 3/2, Σ_j T_j: not local, so its matrix is full; entries below 2^L.
+pub fn transfer(necklaces: &Necklaces) -> Sparse {
+    let size = necklaces.len();
+    let columns: Vec<Vec<i64>> = (0..size)
+        .into_par_iter()
+        .map(|column| {
+            let unit: Vec<i128> = (0..size).map(|i| i128::from(i == column)).collect();
+            let parts = transfer::apply(necklaces, &unit);
+            (0..size).map(|row| parts.iter().map(|part| part[row]).sum::<i128>() as i64).collect()
+        })
+        .collect();
+    let rows = (0..size)
+        .map(|row| (0..size).map(|column| (column, columns[column][row])).filter(|(_, weight)| *weight != 0).collect())
+        .collect();
+    Sparse { rows }
+}
+
 #[cfg(test)]
 mod tests {
     use super::{fourth, one_loop, third};
     use crate::chain::necklace::Necklaces;
-    use crate::chain::transfer;
+    use crate::chain::transfer as matrix;
     use crate::family::Family;
 
     /// All charges commute with each other and with every coefficient of the transfer matrix.
@@ -137,8 +159,8 @@ mod tests {
                 for b in &charges {
                     assert_eq!(a.apply(&b.apply(&state)), b.apply(&a.apply(&state)));
                 }
-                let direct = transfer::apply(&necklaces, &a.apply(&state));
-                let other = transfer::apply(&necklaces, &state);
+                let direct = matrix::apply(&necklaces, &a.apply(&state));
+                let other = matrix::apply(&necklaces, &state);
                 for (x, y) in direct.iter().zip(&other) {
                     assert_eq!(*x, a.apply(y), "({length}, {magnons})");
                 }

@@ -86,7 +86,11 @@ pub fn least_rotation(configuration: Configuration, length: usize) -> Configurat
 
 /// The configuration with the contents of two sites exchanged.
 pub fn exchange(configuration: Configuration, i: usize, j: usize) -> Configuration {
-    if (configuration >> i) & 1 == (configuration >> j) & 1 { configuration } else { configuration ^ (1 << i) ^ (1 << j) }
+    if (configuration >> i) & 1 == (configuration >> j) & 1 {
+        configuration
+    } else {
+        configuration ^ (1 << i) ^ (1 << j)
+    }
 }
 
 #[cfg(test)]

@@ -25,12 +25,14 @@ use crate::record::Parity;
 use rayon::iter::{IntoParallelIterator, IntoParallelRefIterator, ParallelIterator};
 use rug::Integer;
 use std::cmp::Ordering;
+use std::sync::OnceLock;
 
 /// More primaries than this are refused: exact orbits of that size are out of reach.
 pub const MOST_PRIMARIES: usize = 1500;
 
-/// Weights of (γ₁, q₃, q₄) in the separating charge, tried in this order.
-const COMBINATIONS: [(i64, i64, i64); 4] = [(1, 1, 0), (1, 1, 1), (1, 2, 3), (3, 5, 7)];
+/// Weights of (γ₁, q₃, q₄, T(3/2)) in the separating charge, tried in this order: local charges first, which
+/// are sparse and have small eigenvalues, then with the transfer matrix, which separates what they do not.
+const COMBINATIONS: [[i64; 4]; 4] = [[1, 1, 0, 0], [1, 1, 1, 0], [1, 1, 0, 1], [3, 5, 7, 2]];
 
 /// All primaries of a family with M ≥ 2, sorted and labelled as records are.
 ///
@@ -76,7 +78,12 @@ fn finish(family: Family, count: usize, mut orbits: Vec<Orbit>) -> Result<Vec<Or
             .then_with(|| (a.parity == Parity::Paired).cmp(&(b.parity == Parity::Paired)))
             .then_with(|| down(&a.field, &b.field))
             .then_with(|| {
-                a.transfer.iter().zip(&b.transfer).map(|(x, y)| down(x, y)).find(|o| o.is_ne()).unwrap_or(Ordering::Equal)
+                a.transfer
+                    .iter()
+                    .zip(&b.transfer)
+                    .map(|(x, y)| down(x, y))
+                    .find(|o| o.is_ne())
+                    .unwrap_or(Ordering::Equal)
             })
     });
     for (i, orbit) in orbits.iter_mut().enumerate() {
@@ -89,7 +96,10 @@ fn finish(family: Family, count: usize, mut orbits: Vec<Orbit>) -> Result<Vec<Or
 struct Chain {
     family: Family,
     count: usize,
+    necklaces: Necklaces,
     charges: [Sparse; 3],
+    /// T(3/2), made when it is needed.
+    transfer: OnceLock<Sparse>,
     functional: Vec<i64>,
     /// ψ, γ₁ψ, q₄ψ, T_0ψ, …, T_Lψ.
     vectors: Vec<Vec<Integer>>,
@@ -112,16 +122,19 @@ impl Chain {
         let mut vectors = vec![start.clone(), charges[0].apply(&start), charges[2].apply(&start)];
         vectors.extend(transfer::apply(&necklaces, &start));
         let vectors = vectors.into_iter().map(|v| v.into_iter().map(Integer::from).collect()).collect();
-        Chain { family, count, charges, functional, vectors }
+        Chain { family, count, necklaces, charges, transfer: OnceLock::new(), functional, vectors }
     }
 
     /// The orbits when this combination separates the states, `None` when it does not.
-    fn orbits(&self, (a, b, c): (i64, i64, i64), observer: &dyn Observer) -> Result<Option<Vec<Orbit>>> {
-        let charge = Transposed::new(&Sparse::combination(&[
-            (a, &self.charges[0]),
-            (b, &self.charges[1]),
-            (c, &self.charges[2]),
-        ]));
+    fn orbits(&self, weights: [i64; 4], observer: &dyn Observer) -> Result<Option<Vec<Orbit>>> {
+        if weights[3] != 0 && self.family.length > 60 {
+            return Ok(None); // the entries of T(3/2) would not fit into a word
+        }
+        let mut parts: Vec<(i64, &Sparse)> = weights.into_iter().zip(&self.charges).collect();
+        if weights[3] != 0 {
+            parts.push((weights[3], self.transfer.get_or_init(|| charges::transfer(&self.necklaces))));
+        }
+        let charge = Transposed::new(&Sparse::combination(&parts));
         // A first prime tells whether the charge separates; only a fluke of the prime could deny it.
         let first = self.image(&charge, PrimeField::nth(0));
         if first.recurrence.len() != self.count + 1 {
@@ -232,8 +245,7 @@ impl Eigenvalues {
         let field = image.field;
         let ring = Quotient::new(field, factor.iter().map(|c| field.image(c)).collect());
         let start = ring.inverse(&ring.element(&image.numerators[0]))?;
-        let mut values =
-            image.numerators[1..].iter().map(|numerator| ring.mul(&ring.element(numerator), &start));
+        let mut values = image.numerators[1..].iter().map(|numerator| ring.mul(&ring.element(numerator), &start));
         let (gamma_1, charge_4) = (values.next()?, values.next()?);
         let transfer = values.collect();
         Some(Eigenvalues { ring, gamma_1, charge_4, transfer })
@@ -279,9 +291,13 @@ impl Pending {
     fn new(chain: &Chain, factor: Vec<Integer>, image: &Image) -> Result<Pending> {
         let size = factor.len() - 1;
         let failed = |what: &str| {
-            Error::check(format!("family {}: an orbit of {size} states {what}; please report this family", chain.family))
+            Error::check(format!(
+                "family {}: an orbit of {size} states {what}; please report this family",
+                chain.family
+            ))
         };
-        let eigenvalues = Eigenvalues::new(&factor, image).ok_or_else(|| failed("is not reached by the start vector"))?;
+        let eigenvalues =
+            Eigenvalues::new(&factor, image).ok_or_else(|| failed("is not reached by the start vector"))?;
         let parity = if eigenvalues.symmetric() { Parity::Symmetric } else { Parity::Paired };
         if parity == Parity::Paired && size % 2 == 1 {
             return Err(failed("is paired and of odd size"));

@@ -16,10 +16,7 @@ impl Console {
     /// The console of this process.
     pub fn standard() -> Console {
         let plain = std::env::var_os("NO_COLOR").is_some_and(|value| !value.is_empty());
-        Console {
-            colour: !plain && std::io::stdout().is_terminal(),
-            interactive: std::io::stderr().is_terminal(),
-        }
+        Console { colour: !plain && std::io::stdout().is_terminal(), interactive: std::io::stderr().is_terminal() }
     }
 
     /// Writes a result to standard output. A reader that went away ends the program quietly.

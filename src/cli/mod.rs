@@ -82,7 +82,9 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
 fn in_pool<T: Send>(threads: Option<usize>, work: impl FnOnce() -> Result<T> + Send) -> Result<T> {
     let count = threads.unwrap_or(0);
     if threads == Some(0) || count > 4096 {
-        return Err(Error::input(format!("--threads {count} is not between 1 and 4096; leave it out to use all cores")));
+        return Err(Error::input(format!(
+            "--threads {count} is not between 1 and 4096; leave it out to use all cores"
+        )));
     }
     let pool = rayon::ThreadPoolBuilder::new()
         .num_threads(count)

@@ -10,8 +10,8 @@ use crate::chain::Orbit;
 use crate::error::Result;
 use crate::family::Family;
 use crate::record::{
-    CERTIFICATE, COUPLING, Certificate, CertificateOrbit, CertificateOrder, CertificateTerm, Coefficient, PROGRAM, Parity, Parts, Record,
-    State, Status, Term, Zeta,
+    CERTIFICATE, COUPLING, Certificate, CertificateOrbit, CertificateOrder, CertificateTerm, Coefficient, PROGRAM,
+    Parity, Parts, Record, State, Status, Term, Zeta,
 };
 use rug::{Integer, Rational};
 

@@ -148,8 +148,7 @@ impl Subfield {
             power = ring.mul(&power, omega);
         }
         let rows = independent_rows(field, &columns)?;
-        let square: Vec<Vec<u64>> =
-            rows.iter().map(|i| columns.iter().map(|column| column[*i]).collect()).collect();
+        let square: Vec<Vec<u64>> = rows.iter().map(|i| columns.iter().map(|column| column[*i]).collect()).collect();
         let inverse = linear::inverse(field, &square)?;
         Some(Subfield { rows, inverse, columns })
     }

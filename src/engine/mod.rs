@@ -116,7 +116,9 @@ pub fn compute(
         .collect();
     let lifted = results.into_iter().collect::<Result<Vec<_>>>()?;
     let record = assemble::record(request, &grading, orbits.iter().map(Orbit::members).sum(), &lifted)?;
-    record.check("the record just computed").map_err(|error| Error::check("an internal check failed").because(error))?;
+    record
+        .check("the record just computed")
+        .map_err(|error| Error::check("an internal check failed").because(error))?;
     let certificate = if request.certificate { Some(assemble::certificate(request, &grading, &lifted)?) } else { None };
     Ok(Outcome { record, certificate })
 }

@@ -51,7 +51,8 @@ pub fn lift<'a>(
     loop {
         let range = next..next + batch;
         next = range.end;
-        let planned = Event::Planned { family: family.clone(), orbit: orbit.label.clone(), unit: "primes", total: next };
+        let planned =
+            Event::Planned { family: family.clone(), orbit: orbit.label.clone(), unit: "primes", total: next };
         observer.event(planned);
         for (index, image) in images(request, orbit, grading, range, parallel, checkpoint, observer)? {
             let Some(image) = image else { continue };
@@ -145,8 +146,11 @@ fn encode(images: &[(usize, Option<Image>)]) -> Vec<u8> {
 }
 
 fn decode(bytes: &[u8], range: std::ops::Range<usize>) -> Option<Vec<(usize, Option<Image>)>> {
-    let words: Vec<u64> =
-        bytes.chunks_exact(8).map(|chunk| chunk.try_into().map(u64::from_le_bytes)).collect::<std::result::Result<_, _>>().ok()?;
+    let words: Vec<u64> = bytes
+        .chunks_exact(8)
+        .map(|chunk| chunk.try_into().map(u64::from_le_bytes))
+        .collect::<std::result::Result<_, _>>()
+        .ok()?;
     let mut words = words.into_iter();
     let mut images = Vec::new();
     for index in range {

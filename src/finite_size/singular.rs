@@ -134,11 +134,7 @@ impl<E: Clone> Scale<E> {
         let shorter = Grading::plain(c.len() - 2);
         let series = Graded::new(ring, &shorter);
         let divided = |x: &[E]| x[1..].to_vec();
-        Some(Scale {
-            c: divided(c),
-            c_inverse: series.inverse(&divided(c))?,
-            e_inverse: series.inverse(&divided(e))?,
-        })
+        Some(Scale { c: divided(c), c_inverse: series.inverse(&divided(c))?, e_inverse: series.inverse(&divided(e))? })
     }
 
     // One order is lost by the division; the missing last coefficient is never used below.

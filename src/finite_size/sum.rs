@@ -33,7 +33,9 @@ pub fn twisted_sum<R: Ring>(
     zeta_right: &R::Elem,
 ) -> Result<Sum<R::Elem>> {
     let non_unit = || {
-        Error::undefined("the finite-size sum needs Q(1/2), Q(-1/2) and the twists invertible; a singular state needs the twist limit")
+        Error::undefined(
+            "the finite-size sum needs Q(1/2), Q(-1/2) and the twists invertible; a singular state needs the twist limit",
+        )
     };
     let up = poly::shift(ring, q, &ring.ratio(1, 2));
     let down = poly::shift(ring, q, &ring.ratio(-1, 2));
@@ -248,11 +250,8 @@ pub(super) fn numerator<R: Ring>(
     let (alpha_left, beta_left) = factors(&twist.left);
     let (alpha_right, beta_right) = factors(&twist.right);
     let mul = |a: &[R::Elem], b: &[R::Elem]| poly::mul_truncated(ring, a, b, length);
-    let cross: Vec<R::Elem> = mul(&alpha_left, &beta_right)
-        .iter()
-        .zip(&mul(&beta_left, &alpha_right))
-        .map(|(a, b)| ring.add(a, b))
-        .collect();
+    let cross: Vec<R::Elem> =
+        mul(&alpha_left, &beta_right).iter().zip(&mul(&beta_left, &alpha_right)).map(|(a, b)| ring.add(a, b)).collect();
     let weights = [mul(&beta_left, &beta_right), cross, mul(&alpha_left, &alpha_right)];
     let one = ring.ratio(1, 1);
     let mut total = vec![ring.zero(); length];

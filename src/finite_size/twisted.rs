@@ -42,18 +42,17 @@ pub fn twist_power<R: Ring>(ring: &R, exponent: i64, len: usize) -> Vec<R::Elem>
 pub fn solve<R: Ring>(ring: &R, family: Family, q1: &[R::Elem], order: usize) -> Result<TwistedRoots<R::Elem>> {
     let at = |poly: &[R::Elem], n: i64, d: i64| poly::evaluate_scalar(ring, poly, &ring.ratio(n, d));
     let non_unit = |what: &str| {
-        Error::undefined(format!("family {family}: {what} is no unit, as it is for every physical singular state over a field; use another prime"))
+        Error::undefined(format!(
+            "family {family}: {what} is no unit, as it is for every physical singular state over a field; use another prime"
+        ))
     };
     let r0 = poly::divide_by_root(ring, &poly::divide_by_root(ring, q1, &ring.ratio(1, 2)), &ring.ratio(-1, 2));
     let inverse = ring.inverse(&at(&r0, -1, 2)).ok_or_else(|| non_unit("R(-1/2)"))?;
     let g0 = ring.mul(&ring.scale(&at(&r0, 3, 2), &ring.ratio(-2, 1)), &inverse);
     let jacobian = jacobian(ring, family, &r0, &g0);
-    let inverse = linear::inverse(ring, &jacobian).ok_or_else(|| non_unit("the Jacobian of the twisted Bethe equations"))?;
-    let mut roots = TwistedRoots {
-        c: vec![ring.zero()],
-        g: vec![g0],
-        r: r0.iter().map(|c| vec![c.clone()]).collect(),
-    };
+    let inverse =
+        linear::inverse(ring, &jacobian).ok_or_else(|| non_unit("the Jacobian of the twisted Bethe equations"))?;
+    let mut roots = TwistedRoots { c: vec![ring.zero()], g: vec![g0], r: r0.iter().map(|c| vec![c.clone()]).collect() };
     for step in 1..=order {
         let grading = Grading::plain(step);
         let series = Graded::new(ring, &grading);
@@ -71,11 +70,7 @@ pub fn solve<R: Ring>(ring: &R, family: Family, q1: &[R::Elem], order: usize) ->
 }
 
 /// The left sides of the equations for the roots near ½ and −½, and of that modulo R.
-fn equations<R: Ring>(
-    series: &Graded<'_, R>,
-    family: Family,
-    roots: &TwistedRoots<R::Elem>,
-) -> Vec<Vec<R::Elem>> {
+fn equations<R: Ring>(series: &Graded<'_, R>, family: Family, roots: &TwistedRoots<R::Elem>) -> Vec<Vec<R::Elem>> {
     let Family { length, .. } = family;
     let ring = series.base();
     let len = series.grading().len();
@@ -179,7 +174,11 @@ fn jacobian<R: Ring>(ring: &R, family: Family, r: &[R::Elem], g: &R::Elem) -> Ve
     }
     let factor = |parts: &[(i64, i64, usize)]| -> Vec<R::Elem> {
         let product = parts.iter().fold(vec![Rational::from(1)], |product, (n, d, power)| {
-            poly::mul(&crate::algebra::rationals::Rationals, &product, &binomial_power(Rational::from((*n, *d)), *power))
+            poly::mul(
+                &crate::algebra::rationals::Rationals,
+                &product,
+                &binomial_power(Rational::from((*n, *d)), *power),
+            )
         });
         product.iter().map(|c| ring.constant(&ring.scalar(c))).collect()
     };
@@ -201,20 +200,14 @@ fn jacobian<R: Ring>(ring: &R, family: Family, r: &[R::Elem], g: &R::Elem) -> Ve
         &poly::mul(ring, &factor(&[(1, 2, length), (-1, 1, 1)]), &r_down),
         &poly::mul(ring, &factor(&[(-1, 2, length), (1, 1, 1)]), &r_up),
     );
-    let mut columns = vec![
-        reduce(&along_c).iter().map(|x| times(-2, x)).collect::<Vec<_>>(),
-        vec![ring.zero(); degree],
-    ];
+    let mut columns =
+        vec![reduce(&along_c).iter().map(|x| times(-2, x)).collect::<Vec<_>>(), vec![ring.zero(); degree]];
     let (lower, upper, quotient) = (reduce(&lower), reduce(&upper), reduce(&quotient));
     for j in 0..degree {
         let monomial = |shift: i64| -> Vec<R::Elem> {
             binomial_power(Rational::from(shift), j).iter().map(|c| ring.constant(&ring.scalar(c))).collect()
         };
-        let sum = poly::add(
-            ring,
-            &poly::mul(ring, &lower, &monomial(-1)),
-            &poly::mul(ring, &upper, &monomial(1)),
-        );
+        let sum = poly::add(ring, &poly::mul(ring, &lower, &monomial(-1)), &poly::mul(ring, &upper, &monomial(1)));
         columns.push(reduce(&poly::sub(ring, &sum, &poly::mul(ring, &quotient, &monomial(0)))));
     }
     rows.extend((0..degree).map(|i| columns.iter().map(|column| column[i].clone()).collect()));
@@ -235,8 +228,7 @@ pub fn counterterm(length: usize) -> Rational {
     let square = mul(&inverse, &inverse);
     let cube = mul(&square, &inverse);
     let root = mul(&inverse, &[Rational::from(1), Rational::from(4)]);
-    let y: Vec<Rational> =
-        root.iter().enumerate().map(|(i, c)| (c.clone() + i32::from(i == 0)) / 2).collect();
+    let y: Vec<Rational> = root.iter().enumerate().map(|(i, c)| (c.clone() + i32::from(i == 0)) / 2).collect();
     let power = (1..2 * length).fold(vec![Rational::from(1)], |power, _| mul(&power, &y));
     let sum: Vec<Rational> = square.iter().zip(&cube).map(|(a, b)| Rational::from(a + b)).collect();
     mul(&power, &sum).pop().unwrap_or_default()

@@ -88,14 +88,9 @@ fn columns<R: Ring>(graded: &Graded<'_, R>, poly: &GradedPolynomial<R>, count: u
         .collect()
 }
 
-/// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+1, as far as h^{top−(m−1)/2}, for the roots of `poly`:
+/// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+2 (the even ones enter even charges), as far as h^{top−(m−1)/2}, for the roots of `poly`:
 /// S_m = −[w^{m−1}] q'(w)/q(w) with q(w) = poly(side/2 + w).
-fn power_sums<R: Ring>(
-    graded: &Graded<'_, R>,
-    poly: &[Series<R>],
-    side: i64,
-    top: usize,
-) -> Result<Vec<Series<R>>> {
+fn power_sums<R: Ring>(graded: &Graded<'_, R>, poly: &[Series<R>], side: i64, top: usize) -> Result<Vec<Series<R>>> {
     let shifted = poly::shift(graded, poly, &graded.base().ratio(side, 2));
     let Some(unit) = graded.inverse(&shifted[0]) else {
         return Err(Error::undefined(
@@ -104,8 +99,8 @@ fn power_sums<R: Ring>(
     };
     let q: Vec<Series<R>> = shifted.iter().skip(1).map(|c| graded.mul(c, &unit)).collect();
     // m q_m = Σ_{i=1}^{m} s_i q_{m−i} with q_0 = 1, and S_m = −s_m.
-    let mut sums: Vec<Series<R>> = Vec::with_capacity(2 * top + 1);
-    for m in 1..=2 * top + 1 {
+    let mut sums: Vec<Series<R>> = Vec::with_capacity(2 * top + 2);
+    for m in 1..=2 * top + 2 {
         let terms: Vec<_> = (1..m).filter_map(|i| q.get(m - i - 1).map(|c| (&sums[i - 1], c))).collect();
         // `sums` holds S = −s, so the products already carry the sign of m q_m's counterpart.
         let products = graded.sum_of_products(&terms, top - (m - 1) / 2);
@@ -236,14 +231,7 @@ impl<R: Ring> Correction<R> {
     }
 
     /// r G Σ_k w_k F_{k−r}(c) for one r.
-    fn at(
-        &self,
-        graded: &Graded<'_, R>,
-        potential: &Potential<R>,
-        family: Family,
-        r: usize,
-        top: usize,
-    ) -> Series<R> {
+    fn at(&self, graded: &Graded<'_, R>, potential: &Potential<R>, family: Family, r: usize, top: usize) -> Series<R> {
         let terms: Vec<_> = potential
             .modes
             .iter()

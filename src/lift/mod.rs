@@ -38,7 +38,12 @@ pub struct Lift<R: Ring> {
 
 impl<R: Ring> Lift<R> {
     /// γ = 2h P₁: the asymptotic γ_n as one number for each zeta product of `grading.products(n−1)`.
-    pub fn anomalous_dimension<'a>(&'a self, ring: &R, grading: &'a Grading, order: usize) -> Vec<(&'a [u32], R::Elem)> {
+    pub fn anomalous_dimension<'a>(
+        &'a self,
+        ring: &R,
+        grading: &'a Grading,
+        order: usize,
+    ) -> Vec<(&'a [u32], R::Elem)> {
         let two = ring.ratio(2, 1);
         grading
             .products(order - 1)
@@ -75,7 +80,6 @@ pub fn lift<R: Ring>(
         }
         wronskian.solve(grading, order, &potential);
     }
-    let charges =
-        charges::charges(&graded, family, &wronskian.q1, &potential, grading.order(), singular, symmetric)?;
+    let charges = charges::charges(&graded, family, &wronskian.q1, &potential, grading.order(), singular, symmetric)?;
     Ok(Lift { q1: wronskian.q1, q2: wronskian.q2, charges, singular })
 }

@@ -46,7 +46,11 @@ impl Record {
         let family = crate::family::Family::new(self.length, self.magnons)
             .map_err(|error| error.within(format!("{origin}: not a family")))?;
         if family.primaries() != self.primaries {
-            return refuse(format!("{} primaries, and the necklace formula gives {}", self.primaries, family.primaries()));
+            return refuse(format!(
+                "{} primaries, and the necklace formula gives {}",
+                self.primaries,
+                family.primaries()
+            ));
         }
         let members = self.orbits.iter().fold(0usize, |sum, orbit| sum.saturating_add(orbit.members));
         if self.whole() && members != self.primaries {
@@ -146,7 +150,9 @@ fn check_terms(terms: &[Term], degree: usize, schema: u32) -> std::result::Resul
         for zeta in &term.zeta {
             let fine = match zeta {
                 Zeta::Single(k) => k % 2 == 1 && *k >= 3,
-                Zeta::Multiple(arguments) => schema >= 2 && arguments.len() >= 2 && arguments[0] >= 2 && !arguments.contains(&0),
+                Zeta::Multiple(arguments) => {
+                    schema >= 2 && arguments.len() >= 2 && arguments[0] >= 2 && !arguments.contains(&0)
+                }
             };
             // A product with an even single zeta (ζ5 ζ8 beside a multiple zeta value) exists from double wrapping on.
             let even = schema >= 2 && matches!(zeta, Zeta::Single(k) if *k >= 2);

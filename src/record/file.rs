@@ -16,8 +16,9 @@ pub fn file_name(family: Family) -> String {
 /// # Errors
 /// The file cannot be read, or is not a valid record.
 pub fn read(path: &Path) -> Result<Record> {
-    let text = std::fs::read_to_string(path)
-        .map_err(|cause| Error::io(format!("cannot read the record {}; check the path and its permissions", path.display()), cause))?;
+    let text = std::fs::read_to_string(path).map_err(|cause| {
+        Error::io(format!("cannot read the record {}; check the path and its permissions", path.display()), cause)
+    })?;
     Record::from_json(&text, &path.display().to_string())
 }
 
