@@ -11,6 +11,7 @@ mod manual;
 mod plot;
 mod progress;
 mod reading;
+mod scan;
 mod series;
 
 use crate::error::{Error, Result};
@@ -33,6 +34,7 @@ struct Arguments {
 enum Command {
     Series(series::Arguments),
     Census(census::Arguments),
+    Scan(scan::Arguments),
     Audit(audit::Arguments),
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
@@ -66,6 +68,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
     match &arguments.command {
         Command::Series(arguments) => series::run(arguments, &console),
         Command::Census(arguments) => census::run(arguments, &console),
+        Command::Scan(arguments) => scan::run(arguments, &console),
         Command::Audit(arguments) => audit::run(arguments, &console),
         Command::Evaluate(arguments) => evaluate::run(arguments, &console),
         Command::Export(arguments) => export::run(arguments, &console),

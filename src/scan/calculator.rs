@@ -1,5 +1,6 @@
 //! What a scan needs from whoever computes: the engine, or an invented calculator in tests.
 
+use crate::engine::{Checkpoint, Cost};
 use crate::error::Result;
 use crate::family::Family;
 use crate::observer::Observer;
@@ -26,15 +27,6 @@ pub struct Product {
     pub certificate: Option<String>,
 }
 
-/// An estimate made before starting.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Cost {
-    /// Seconds on one core.
-    pub seconds: f64,
-    /// Bytes at the least parallelism.
-    pub bytes: u64,
-}
-
 /// An orbit of a family, as far as a filter looks at it.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct OrbitOutline {
@@ -44,19 +36,6 @@ pub struct OrbitOutline {
     pub degree: usize,
     /// Symmetric or paired.
     pub parity: Parity,
-}
-
-/// Finished work units inside a long family. Keys name units; a unit stored under a key may be
-/// used again in place of computing it.
-pub trait Checkpoint: Sync {
-    /// The unit stored under `key`, if there is one.
-    fn load(&self, key: &str) -> Option<Vec<u8>>;
-
-    /// Stores a unit.
-    ///
-    /// # Errors
-    /// The unit cannot be kept and going on makes no sense.
-    fn store(&self, key: &str, bytes: &[u8]) -> Result<()>;
 }
 
 /// Computes families. Parallelism is whatever rayon pool it is called in; results must not depend on it.

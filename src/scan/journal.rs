@@ -9,7 +9,7 @@
 //! Nothing is written in the first quarter of a second of a family, and then at most four times a
 //! second: most families are done before, and a killed scan loses little.
 
-use super::calculator::Checkpoint;
+use crate::engine::Checkpoint;
 use crate::error::Result;
 use std::collections::HashMap;
 use std::fs::{File, OpenOptions};

@@ -5,6 +5,7 @@
 //! [`Calculator`].
 
 mod calculator;
+mod engine;
 mod journal;
 mod lock;
 mod place;
@@ -17,7 +18,10 @@ mod summary;
 mod values;
 mod work;
 
-pub use calculator::{Calculator, Checkpoint, Cost, Job, OrbitOutline, Product};
+pub use crate::engine::{Checkpoint, Cost};
+pub use calculator::{Calculator, Job, OrbitOutline, Product};
+
+pub use engine::Engine;
 pub use journal::Journal;
 pub use plan::{Filter, Plan, Task};
 pub use run::{Item, Settings, State, Step, Watcher, prepare, run, survey};

@@ -5,7 +5,7 @@
 //! put off, and taken up at the end if that scan did not finish them. Results do not depend on any
 //! of this.
 
-use super::calculator::{Calculator, Cost};
+use super::calculator::Calculator;
 use super::lock::{self, Attempt};
 use super::plan::{Plan, Task};
 use super::resources::{Budget, Presence};
@@ -13,6 +13,7 @@ use super::shard::{Shard, assign};
 use super::store::{Found, Store, is_storage_failure};
 use super::summary::{Outcome, Summary};
 use super::work::{Progress, complete_family};
+use crate::engine::Cost;
 use crate::error::{Error, Kind, Result};
 use crate::family::Family;
 use crate::observer::{Event, Observer};
