@@ -43,7 +43,7 @@ pub fn document(records: &[Record], options: &Options) -> Result<String> {
     let power =
         if coupling.symbol_latex() == "g^2" { "g^{2n}".to_string() } else { format!("{}^n", coupling.symbol_latex()) };
     text.push_str(&format!(
-        "\\noindent Anomalous dimensions of $\\mathfrak{{su}}(2)$ primaries of length $L$ with $M$ magnons in planar $\\mathcal{{N}}=4$ super Yang--Mills theory: $\\Delta = L + \\sum_n \\gamma_n {power}$ with ${}$. In each orbit $\\omega$ is a root of the minimal polynomial given.\n",
+        "\\noindent Anomalous dimensions of SU(2)-sector primaries of length $L$ with $M$ magnons in planar $\\mathcal{{N}}=4$ super Yang--Mills theory: $\\Delta = L + \\sum_n \\gamma_n {power}$ with ${}$. In each orbit $\\omega$ is a root of the minimal polynomial given.\n",
         coupling.definition_latex()
     ));
     for record in records {
@@ -59,7 +59,7 @@ pub fn document(records: &[Record], options: &Options) -> Result<String> {
 fn table(record: &Record, options: &Options, constants: &Constants) -> Result<String> {
     let (length, magnons) = (record.length, record.magnons);
     let mut text = format!(
-        "\\begin{{longtable}}{{@{{}}r >{{\\raggedright\\arraybackslash}}p{{0.12\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{\\dimexpr0.82\\textwidth-4\\tabcolsep\\relax}}@{{}}}}\n\
+        "\\begingroup\\renewcommand{{\\arraystretch}}{{1.25}}\n\\begin{{longtable}}{{@{{}}>{{\\raggedleft\\arraybackslash}}p{{0.03\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{0.12\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{\\dimexpr0.85\\textwidth-4\\tabcolsep\\relax}}@{{}}}}\n\
          \\caption{{Family $(L,M) = ({length},{magnons})$: {} {}, coefficients of ${}$.}}\\\\\n\
          \\toprule\n$n$ & & $\\gamma_n$ \\\\\n\\midrule\n\\endfirsthead\n\
          \\multicolumn{{3}}{{@{{}}l}}{{Family $({length},{magnons})$, continued}}\\\\\n\\toprule\n$n$ & & $\\gamma_n$ \\\\\n\\midrule\n\\endhead\n\
@@ -74,7 +74,7 @@ fn table(record: &Record, options: &Options, constants: &Constants) -> Result<St
         }
         text.push_str(&block(record, orbit, options, constants)?);
     }
-    text.push_str("\\end{longtable}\n");
+    text.push_str("\\end{longtable}\n\\endgroup\n");
     Ok(text)
 }
 
