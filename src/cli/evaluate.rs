@@ -47,7 +47,7 @@ pub fn run(arguments: &Arguments, console: &Console) -> Result<()> {
     if let Some(digits) = arguments.digits.filter(|&digits| digits == 0 || digits > 1000) {
         return Err(Error::input(format!("--digits {digits}: give a number of digits between 1 and 1000")));
     }
-    let record = record_of(arguments.length, arguments.magnons, arguments.from.as_deref(), arguments.loops)?;
+    let record = record_of(arguments.length, arguments.magnons, arguments.from.as_deref(), arguments.loops, console)?;
     let found = estimates(&record, &selections, &points, arguments.loops, arguments.digits.unwrap_or(40))?;
     console.result(&match arguments.format {
         Format::Text => text(&found, arguments.digits),

@@ -1,12 +1,13 @@
 //! How the commands that need a record get one: from a file, or computed on the spot.
 
+use super::{Console, Progress, in_pool, interrupt};
 use crate::engine::{NoCheckpoint, Request, compute};
 use crate::error::{Error, Result};
 use crate::family::Family;
-use crate::observer::Silent;
 use crate::record::{Record, read};
 use crate::report::coupling::Coupling;
 use std::path::Path;
+use std::time::Duration;
 
 /// Output for people or for programs.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, clap::ValueEnum)]
@@ -26,13 +27,19 @@ pub fn record_of(
     magnons: Option<usize>,
     from: Option<&Path>,
     loops: Option<usize>,
+    console: &Console,
 ) -> Result<Record> {
     match (from, length, magnons) {
         (Some(path), _, _) => read(path),
         (None, Some(length), Some(magnons)) => {
             let family = Family::new(length, magnons)?;
             let request = Request::new(family, loops.unwrap_or(length));
-            Ok(compute(&request, None, &NoCheckpoint, &Silent)?.record)
+            request.check()?;
+            interrupt::listen(Duration::from_millis(1500))?;
+            let progress = Progress::new(console);
+            let outcome = in_pool(None, || compute(&request, None, &NoCheckpoint, &progress));
+            progress.finish();
+            Ok(outcome?.record)
         }
         _ => Err(Error::input("no family: give the length L and the magnons M, or --from FILE with a record")),
     }
