@@ -123,7 +123,8 @@ impl<'a> Numbers<'a> {
         })
     }
 
-    /// A sum of terms at loop `order` in the given coupling, to `digits` significant digits.
+    /// A sum of terms at loop `order` in the given coupling, to `digits` significant digits
+    /// (an integer as it is).
     ///
     /// # Errors
     /// As [`Numbers::decimal`].
@@ -139,6 +140,9 @@ impl<'a> Numbers<'a> {
             && let Some(exact) = self.rational(terms)?
         {
             let exact = exact * coupling.factor(order);
+            if exact.is_integer() {
+                return Ok(exact.to_string());
+            }
             return Ok(round_decimal(&exact, digits as i64 - 1 - decimal_exponent(&exact)));
         }
         let mut bits = bits_for(digits);
@@ -164,6 +168,9 @@ impl<'a> Numbers<'a> {
         let mut value = vec!["0".to_string(); self.polynomial.len() - 1];
         if value.len() == 1 {
             let exact = -self.polynomial[0].clone();
+            if exact.is_integer() {
+                return Ok(exact.to_string());
+            }
             return Ok(round_decimal(&exact, digits as i64 - 1 - decimal_exponent(&exact)));
         }
         value[1] = "1".to_string();

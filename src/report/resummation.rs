@@ -6,7 +6,7 @@
 //!
 //! - the partial sum;
 //! - Padé approximants [m/n] in h with m + n = N, m and n as equal as possible, of the whole γ
-//!   (which starts at h, so that [m/n] has m ≥ 1);
+//!   (which starts at h, so that [m/n] has m ≥ 1); one with a pole on [0, h] is set aside;
 //! - the conformal map z = (√(1+16h) − 1)/(√(1+16h) + 1), h = z/(4(1−z)²), which sends the plane
 //!   without the cut to the unit disc: γ = Σ c_k z^k, cut after k = N, converges for every g ≥ 0 as
 //!   far as the cut is the only singularity.
@@ -70,14 +70,7 @@ pub fn sum(gamma: &[Interval], h: &Float) -> Sums {
     };
     let c: Vec<Float> = (1..=loops).map(coefficient).collect();
     let mapped = horner(&c, &z) * &z;
-    let pade = pade_pairs(loops)
-        .into_iter()
-        .map(|(numerator, denominator)| Pade {
-            numerator,
-            denominator,
-            value: pade(&middle, numerator, denominator, h),
-        })
-        .collect::<Vec<_>>();
+    let pade = approximants(&middle, h);
     let mut last = Float::new(bits);
     for term in c.iter().rev().take(2) {
         last = last.max(&Float::with_val(bits, term.abs_ref()));
@@ -127,13 +120,22 @@ fn mapped_powers(loops: usize, bits: u32) -> Vec<Vec<Float>> {
     rows
 }
 
-fn pade_pairs(loops: usize) -> Vec<(usize, usize)> {
-    let (small, large) = (loops / 2, loops - loops / 2);
-    match loops {
-        0 | 1 => Vec::new(),
-        _ if small == large => vec![(small, large)],
-        _ => vec![(small, large), (large, small)],
+/// The approximants used: those with m + n = N in the order of |m − n|, until one (N even) or two
+/// (N odd) have a value; those without one are kept too, so that a reader sees they were tried.
+fn approximants(gamma: &[Float], h: &Float) -> Vec<Pade> {
+    let loops = gamma.len();
+    let wanted = 1 + loops % 2;
+    let mut degrees: Vec<usize> = (1..=loops).collect();
+    degrees.sort_by_key(|&numerator| ((2 * numerator).abs_diff(loops), numerator));
+    let mut tried = Vec::new();
+    for numerator in degrees.into_iter().filter(|_| loops > 1).take(4) {
+        let denominator = loops - numerator;
+        if denominator == 0 || tried.iter().filter(|pade: &&Pade| pade.value.is_some()).count() == wanted {
+            break;
+        }
+        tried.push(Pade { numerator, denominator, value: pade(gamma, numerator, denominator, h) });
     }
+    tried
 }
 
 /// The value at h of the approximant P/Q of Σ_{k≥1} γ_k h^k with the given degrees, Q(0) = 1.

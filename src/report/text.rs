@@ -193,7 +193,7 @@ fn exact(
         );
     }
     text.push('\n');
-    if decimals.len() > 1 {
+    if decimals.len() > 1 && notation.join(&pieces) != "ω" {
         text.push_str(&columns(decimals, start, style.width, paint));
     }
     text

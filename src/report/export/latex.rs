@@ -24,8 +24,9 @@ const BEFORE: &str = r"\documentclass[10pt,a4paper]{article}
 
 /// Characters of source after which a polynomial goes on in a new row.
 const ROW: usize = 1500;
-/// Digits after which an integer may break.
+/// Digits after which an integer may break, and after which a fraction is written n/d.
 const LONG: usize = 30;
+const FRACTION: usize = 20;
 
 /// The document (or its tables alone).
 ///
@@ -43,7 +44,7 @@ pub fn document(records: &[Record], options: &Options) -> Result<String> {
     let power =
         if coupling.symbol_latex() == "g^2" { "g^{2n}".to_string() } else { format!("{}^n", coupling.symbol_latex()) };
     text.push_str(&format!(
-        "\\noindent Anomalous dimensions of $\\mathfrak{{su}}(2)$ primaries of length $L$ with $M$ magnons in planar $\\mathcal{{N}}=4$ super Yang--Mills theory: $\\Delta = L + \\sum_n \\gamma_n {power}$ with ${}$. In each orbit $\\omega$ is a root of the minimal polynomial given.\n",
+        "\\noindent Anomalous dimensions of SU(2)-sector primaries of length $L$ with $M$ magnons in planar $\\mathcal{{N}}=4$ super Yang--Mills theory: $\\Delta = L + \\sum_n \\gamma_n {power}$ with ${}$. In each orbit $\\omega$ is a root of the minimal polynomial given.\n",
         coupling.definition_latex()
     ));
     for record in records {
@@ -59,7 +60,7 @@ pub fn document(records: &[Record], options: &Options) -> Result<String> {
 fn table(record: &Record, options: &Options, constants: &Constants) -> Result<String> {
     let (length, magnons) = (record.length, record.magnons);
     let mut text = format!(
-        "\\begin{{longtable}}{{@{{}}r >{{\\raggedright\\arraybackslash}}p{{0.12\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{\\dimexpr0.82\\textwidth-4\\tabcolsep\\relax}}@{{}}}}\n\
+        "\\begingroup\\renewcommand{{\\arraystretch}}{{1.4}}\n\\begin{{longtable}}{{@{{}}>{{\\raggedleft\\arraybackslash}}p{{0.03\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{0.12\\textwidth}} >{{\\raggedright\\arraybackslash}}p{{\\dimexpr0.85\\textwidth-4\\tabcolsep\\relax}}@{{}}}}\n\
          \\caption{{Family $(L,M) = ({length},{magnons})$: {} {}, coefficients of ${}$.}}\\\\\n\
          \\toprule\n$n$ & & $\\gamma_n$ \\\\\n\\midrule\n\\endfirsthead\n\
          \\multicolumn{{3}}{{@{{}}l}}{{Family $({length},{magnons})$, continued}}\\\\\n\\toprule\n$n$ & & $\\gamma_n$ \\\\\n\\midrule\n\\endhead\n\
@@ -74,7 +75,7 @@ fn table(record: &Record, options: &Options, constants: &Constants) -> Result<St
         }
         text.push_str(&block(record, orbit, options, constants)?);
     }
-    text.push_str("\\end{longtable}\n");
+    text.push_str("\\end{longtable}\n\\endgroup\n");
     Ok(text)
 }
 
@@ -218,7 +219,7 @@ fn breakable(math: &str) -> String {
         let inside = &rest[at + 7..];
         let Some((numerator, tail)) = inside.split_once("}{") else { break };
         let Some((denominator, tail)) = tail.split_once('}') else { break };
-        if numerator.len().max(denominator.len()) > LONG / 2 {
+        if numerator.len().max(denominator.len()) > FRACTION {
             text.push_str(&format!("({}/\\allowbreak {})", digits(numerator), digits(denominator)));
         } else {
             text.push_str(&format!("\\tfrac{{{numerator}}}{{{denominator}}}"));
@@ -279,8 +280,8 @@ mod tests {
             "123456789012345\\allowbreak 678901234567890\\allowbreak 1234567890 \\omega + \\tfrac{1}{2}"
         );
         assert_eq!(
-            breakable("\\tfrac{1234567890123456}{7} \\omega^{2}"),
-            "(1234567890123456/\\allowbreak 7) \\omega^{2}"
+            breakable("\\tfrac{123456789012345678901}{7} \\omega^{2}"),
+            "(123456789012345678901/\\allowbreak 7) \\omega^{2}"
         );
         assert_eq!(escape("T(1/3)_x"), "T(1/3)\\_x");
     }

@@ -159,7 +159,7 @@ fn sampled(line: &Line, request: &Request, colour: (u8, u8, u8)) -> Sampled {
         mapped.band.push(sums.error.to_f64());
         partial.push((x, sums.partial.to_f64()));
         shorter.push((x, partial_sum(&line.gamma[..used - 1], g * g)));
-        if let Some(value) = sums.pade.first().and_then(|pade| pade.value.as_ref()) {
+        if let Some(value) = sums.pade.iter().find_map(|pade| pade.value.as_ref()) {
             pade.push((x, value.to_f64()));
         }
     }
