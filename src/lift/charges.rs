@@ -88,7 +88,8 @@ fn columns<R: Ring>(graded: &Graded<'_, R>, poly: &GradedPolynomial<R>, count: u
         .collect()
 }
 
-/// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+1, as far as h^{top−(m−1)/2}, for the roots of `poly`:
+/// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+2 (the last one for P₂), as far as h^{top−(m−1)/2}, for
+/// the roots of `poly`:
 /// S_m = −[w^{m−1}] q'(w)/q(w) with q(w) = poly(side/2 + w).
 fn power_sums<R: Ring>(
     graded: &Graded<'_, R>,
@@ -104,8 +105,8 @@ fn power_sums<R: Ring>(
     };
     let q: Vec<Series<R>> = shifted.iter().skip(1).map(|c| graded.mul(c, &unit)).collect();
     // m q_m = Σ_{i=1}^{m} s_i q_{m−i} with q_0 = 1, and S_m = −s_m.
-    let mut sums: Vec<Series<R>> = Vec::with_capacity(2 * top + 1);
-    for m in 1..=2 * top + 1 {
+    let mut sums: Vec<Series<R>> = Vec::with_capacity(2 * top + 2);
+    for m in 1..=2 * top + 2 {
         let terms: Vec<_> = (1..m).filter_map(|i| q.get(m - i - 1).map(|c| (&sums[i - 1], c))).collect();
         // `sums` holds S = −s, so the products already carry the sign of m q_m's counterpart.
         let products = graded.sum_of_products(&terms, top - (m - 1) / 2);
