@@ -2,6 +2,7 @@
 
 mod audit;
 mod census;
+mod compare;
 mod completions;
 mod console;
 mod evaluate;
@@ -34,6 +35,7 @@ enum Command {
     Series(series::Arguments),
     Census(census::Arguments),
     Audit(audit::Arguments),
+    Compare(compare::Arguments),
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
     Plot(plot::Arguments),
@@ -67,6 +69,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
         Command::Series(arguments) => series::run(arguments, &console),
         Command::Census(arguments) => census::run(arguments, &console),
         Command::Audit(arguments) => audit::run(arguments, &console),
+        Command::Compare(arguments) => compare::run(arguments, &console),
         Command::Evaluate(arguments) => evaluate::run(arguments, &console),
         Command::Export(arguments) => export::run(arguments, &console),
         Command::Plot(arguments) => plot::run(arguments, &console),
