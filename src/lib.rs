@@ -5,6 +5,7 @@ pub mod algebra;
 pub mod audit;
 pub mod baxter;
 pub mod chain;
+pub mod compare;
 pub mod cli;
 pub mod engine;
 pub mod error;

@@ -2,6 +2,7 @@
 
 mod audit;
 mod census;
+mod compare;
 mod completions;
 mod console;
 mod evaluate;
@@ -36,6 +37,7 @@ enum Command {
     Census(census::Arguments),
     Scan(scan::Arguments),
     Audit(audit::Arguments),
+    Compare(compare::Arguments),
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
     Plot(plot::Arguments),
@@ -70,6 +72,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
         Command::Census(arguments) => census::run(arguments, &console),
         Command::Scan(arguments) => scan::run(arguments, &console),
         Command::Audit(arguments) => audit::run(arguments, &console),
+        Command::Compare(arguments) => compare::run(arguments, &console),
         Command::Evaluate(arguments) => evaluate::run(arguments, &console),
         Command::Export(arguments) => export::run(arguments, &console),
         Command::Plot(arguments) => plot::run(arguments, &console),
