@@ -8,3 +8,4 @@ pub mod family;
 pub mod observer;
 pub mod record;
 pub mod cli;
+pub mod spectral_curve;
