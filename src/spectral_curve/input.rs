@@ -14,6 +14,8 @@ pub struct OneLoop {
     pub parity: Parity,
     /// The label of the orbit.
     pub label: String,
+    /// ω, which generates the field of the orbit (γ₁ itself where that does).
+    pub omega: Float,
     /// γ₁.
     pub gamma1: Float,
     /// T(v): coefficient of v^j as (real part, imaginary part).

@@ -17,6 +17,7 @@ fn konishi(bits: u32) -> OneLoop {
         magnons: 2,
         parity: Parity::Symmetric,
         label: "L4M2-1".into(),
+        omega: Float::with_val(bits, 12),
         gamma1: Float::with_val(bits, 12),
         transfer: Vec::new(),
         q: real(&[(1, 12), (0, 1), (1, 1)]),
