@@ -3,8 +3,10 @@
 //! FLINT: Fast Library for Number Theory (C library, LGPL). Every wrapper owns what it initialises
 //! and clears it on drop; no FLINT object leaves this folder.
 
+pub mod dense;
 mod factor;
 mod fmpz;
+pub mod lattice;
 mod rational;
 mod roots;
 

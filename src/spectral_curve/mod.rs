@@ -1,0 +1,19 @@
+//! Loops past the wrapping order, from the quantum spectral curve.
+
+pub mod frame;
+pub mod basis;
+mod gluing;
+pub mod input;
+mod laurent;
+pub mod one_loop;
+pub mod mzv;
+mod pivots;
+pub mod relation;
+pub mod solver;
+mod start;
+mod sweep;
+mod tail;
+mod unknowns;
+
+#[cfg(test)]
+mod tests;
