@@ -88,12 +88,8 @@ fn columns<R: Ring>(graded: &Graded<'_, R>, poly: &GradedPolynomial<R>, count: u
         .collect()
 }
 
-<<<<<<< HEAD
-/// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+2 (the even ones enter even charges), as far as h^{top−(m−1)/2}, for the roots of `poly`:
-=======
 /// S_m = Σ_k (v_k − side/2)^{−m}, m = 1 … 2·top+2 (the last one for P₂), as far as h^{top−(m−1)/2}, for
 /// the roots of `poly`:
->>>>>>> audit
 /// S_m = −[w^{m−1}] q'(w)/q(w) with q(w) = poly(side/2 + w).
 fn power_sums<R: Ring>(graded: &Graded<'_, R>, poly: &[Series<R>], side: i64, top: usize) -> Result<Vec<Series<R>>> {
     let shifted = poly::shift(graded, poly, &graded.base().ratio(side, 2));
