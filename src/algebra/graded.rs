@@ -201,7 +201,7 @@ impl<'a, R: Ring> Graded<'a, R> {
 impl<R: Ring> Ring for Graded<'_, R> {
     type Elem = Series<R>;
     type Scalar = R::Scalar;
-    type Acc = Series<R>;
+    type Acc = Vec<R::Acc>;
 
     fn zero(&self) -> Series<R> {
         vec![self.ring.zero(); self.grading.len()]
@@ -258,14 +258,20 @@ impl<R: Ring> Ring for Graded<'_, R> {
         }
         Some(result)
     }
-    fn accumulator(&self) -> Series<R> {
-        self.zero()
+    fn accumulator(&self) -> Vec<R::Acc> {
+        (0..self.grading.len()).map(|_| self.ring.accumulator()).collect()
     }
-    fn accumulate(&self, acc: &mut Series<R>, a: &Series<R>, b: &Series<R>) {
-        let product = self.mul(a, b);
-        *acc = self.add(acc, &product);
+    fn accumulate(&self, acc: &mut Vec<R::Acc>, a: &Series<R>, b: &Series<R>) {
+        for (entry, sum) in acc.iter_mut().enumerate() {
+            for &(i, j) in self.grading.pairs(entry) {
+                let (x, y) = (&a[i as usize], &b[j as usize]);
+                if !self.ring.is_zero(x) && !self.ring.is_zero(y) {
+                    self.ring.accumulate(sum, x, y);
+                }
+            }
+        }
     }
-    fn collect(&self, acc: &mut Series<R>) -> Series<R> {
-        std::mem::replace(acc, self.zero())
+    fn collect(&self, acc: &mut Vec<R::Acc>) -> Series<R> {
+        acc.iter_mut().map(|sum| self.ring.collect(sum)).collect()
     }
 }
