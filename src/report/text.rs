@@ -7,6 +7,7 @@ use super::numbers::Numbers;
 use super::zeta::Constants;
 use crate::error::Result;
 use crate::record::{Coefficient, Orbit, Parity, Record, Status, Term};
+use std::collections::BTreeMap;
 
 /// How the text looks.
 #[derive(Clone, Debug)]
@@ -164,17 +165,7 @@ fn exact(
         pieces = over(&pieces, &divisor, notation);
     }
     let start = INDENT.max(label.chars().count() + 2);
-    let mut lines = vec![String::new()];
-    for (index, piece) in pieces.iter().enumerate() {
-        let next = notation.signed(piece, index == 0);
-        let current = lines.last().map_or(0, |line| line.chars().count());
-        if index > 0 && start + current + next.chars().count() > style.width {
-            lines.push(String::new());
-        }
-        if let Some(line) = lines.last_mut() {
-            line.push_str(if line.is_empty() { next.trim_start() } else { &next });
-        }
-    }
+    let lines = broken(&pieces, notation, style.width.saturating_sub(start));
     let mut text = format!("{label}{}", " ".repeat(start - label.chars().count()));
     text.push_str(&lines.join(&format!("\n{}", " ".repeat(start))));
     let rational = matches!(decimals, [single] if plainly_equal(&pieces, single, notation));
@@ -197,6 +188,40 @@ fn exact(
         text.push_str(&columns(decimals, start, style.width, paint));
     }
     text
+}
+
+/// The summands in lines of at most `room` columns where possible: whole summands first, and one that
+/// fits no line (a long polynomial in brackets) is broken between its own summands.
+fn broken(pieces: &[Piece], notation: Notation, room: usize) -> Vec<String> {
+    let mut lines = vec![String::new()];
+    for (index, piece) in pieces.iter().enumerate() {
+        let next = notation.signed(piece, index == 0);
+        let parts = if next.chars().count() > room { summands(&next) } else { vec![next] };
+        for part in parts {
+            let current = lines.last().map_or(0, |line| line.chars().count());
+            if current > 0 && current + part.chars().count() > room {
+                lines.push(String::new());
+            }
+            if let Some(line) = lines.last_mut() {
+                line.push_str(if line.is_empty() { part.trim_start() } else { &part });
+            }
+        }
+    }
+    lines
+}
+
+/// The text cut before every " + " and " − ".
+fn summands(text: &str) -> Vec<String> {
+    let mut parts = Vec::new();
+    let mut start = 0;
+    for (at, _) in text.match_indices(" + ").chain(text.match_indices(" − ")).collect::<BTreeMap<_, _>>() {
+        if at > start {
+            parts.push(text[start..at].to_string());
+            start = at;
+        }
+    }
+    parts.push(text[start..].to_string());
+    parts
 }
 
 /// Whether the decimal would only repeat an integer.
@@ -326,6 +351,18 @@ mod tests {
             "series_7_3",
             series(&testing::pair(), &Style { coupling: Coupling::Over8PiSquared, ..style }).unwrap()
         );
+    }
+
+    /// No line is longer than asked, also where one summand alone is.
+    #[test]
+    fn lines_fit() {
+        let mut record = testing::cubic();
+        let digits = "1234567890".repeat(3);
+        record.orbits[0].coefficients[2].terms[0].zeta = vec![crate::record::Zeta::Single(3)];
+        record.orbits[0].coefficients[2].terms[0].value = vec![digits.clone(), format!("-{digits}"), digits];
+        let text = series(&record, &Style { width: 80, ..Style::default() }).unwrap();
+        let block = &text[text.find("γ_1 ").unwrap()..text.find("Complete").unwrap()];
+        assert!(block.lines().all(|line| line.chars().count() <= 80), "{block}");
     }
 
     #[test]
