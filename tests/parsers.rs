@@ -1,7 +1,8 @@
 //! Parsers of files that people hand in never panic, whatever the bytes are; and they refuse with an
-//! input error that names the file.
+//! input error (exit code 2) that names the file.
 
 use loopladder::record::{Certificate, Record, canonical_rational};
+use loopladder::scan::{Plan, parse_range, parse_size};
 use proptest::prelude::{Just, ProptestConfig, Strategy, any, prop, prop_assert, prop_oneof, proptest};
 
 /// A record with every kind of entry.
@@ -20,10 +21,26 @@ const CERTIFICATE: &str = r#"{"certificate":1,"length":4,"magnons":2,"loops":2,"
 "omega":["12"],"pair":[{"order":0,"terms":[{"zeta":[],"q1":[["1/12"],["0"],["1"]],"q2":[["0"],["-1/4"],["0"],["1"]]}]},
 {"order":1,"terms":[{"zeta":[],"q1":[["4/3"],["0"],["0"]],"q2":[["0"],["0"],["0"],["0"]]}]}]}]}"#;
 
+/// A scan plan with every key.
+const PLAN: &str = r#"output = "results"
+threads = 2
+memory = "4 GB"
+certificates = true
+
+[[families]]
+lengths = [4, "6-8"]
+magnons = "2-4"
+loops = 5
+max_primaries = 20
+max_degree = 3
+parity = "symmetric"
+"#;
+
 #[test]
 fn the_samples_are_valid() {
     Record::from_json(RECORD, "sample").unwrap();
     Certificate::from_json(CERTIFICATE, "sample").unwrap();
+    Plan::parse(PLAN, "sample").unwrap();
 }
 
 /// Both parsers on one text; a refusal is an input error naming the file, an accepted text says the
@@ -45,6 +62,15 @@ fn parse(text: &str) -> Result<(), String> {
             Err("a certificate changes when written and read again".into())
         }
         Err(error) if error.exit_code() != 2 || !error.to_string().contains("handed-in.json") => Err(error.chain()),
+        _ => Ok(()),
+    }
+}
+
+/// The plan parser and the parsers of the values in a plan.
+fn parse_plan(text: &str) -> Result<(), String> {
+    let _ = (parse_range(text), parse_size(text));
+    match Plan::parse(text, "handed-in.toml") {
+        Err(error) if error.exit_code() != 2 || !error.to_string().contains("handed-in.toml") => Err(error.chain()),
         _ => Ok(()),
     }
 }
@@ -125,8 +151,38 @@ proptest! {
 
     #[test]
     fn arbitrary_bytes(bytes in prop::collection::vec(any::<u8>(), 0..400)) {
-        let outcome = parse(&String::from_utf8_lossy(&bytes));
+        let text = String::from_utf8_lossy(&bytes);
+        let outcome = parse(&text).and_then(|()| parse_plan(&text));
         prop_assert!(outcome.is_ok(), "{outcome:?}");
+    }
+
+    /// Lines of a plan with any keys and values of the right look.
+    #[test]
+    fn arbitrary_plans(lines in prop::collection::vec(
+        ("(output|threads|memory|certificates|lengths|magnons|loops|families|max_primaries|max_degree|parity|[a-z]{1,6})",
+         "([-0-9a-zA-Z., ]{0,8}|\"[-0-9a-zA-Z. /]{0,8}\"|\\[[-0-9, \"]{0,10}\\]|[0-9]{15,25}|true)", any::<bool>()), 0..8),
+    ) {
+        let line = |(key, value, table): &(String, String, bool)| {
+            if *table { format!("[[{key}]]\n") } else { format!("{key} = {value}\n") }
+        };
+        let text: String = lines.iter().map(line).collect();
+        let outcome = parse_plan(&text).and_then(|()| parse(&text));
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// A valid plan with one stretch of bytes replaced.
+    #[test]
+    fn damaged_plans(
+        place in any::<prop::sample::Index>(), length in 0usize..12,
+        filling in prop_oneof!["[-0-9a-zA-Z.,=\"\\[\\]{} \n]{0,12}".prop_map(String::into_bytes), prop::collection::vec(any::<u8>(), 0..12)],
+    ) {
+        let mut bytes = PLAN.as_bytes().to_vec();
+        let start = place.index(bytes.len());
+        let end = (start + length).min(bytes.len());
+        bytes.splice(start..end, filling);
+        let text = String::from_utf8_lossy(&bytes);
+        let outcome = parse_plan(&text);
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
     }
 
     #[test]
