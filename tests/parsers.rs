@@ -1,6 +1,8 @@
 //! Parsers of files that people hand in never panic, whatever the bytes are; and they refuse with an
 //! input error (exit code 2) that names the file.
 
+use loopladder::compare::Reference;
+use loopladder::compare::expression;
 use loopladder::record::{Certificate, Record, canonical_rational};
 use loopladder::scan::{Plan, parse_range, parse_size};
 use proptest::prelude::{Just, ProptestConfig, Strategy, any, prop, prop_assert, prop_oneof, proptest};
@@ -36,8 +38,12 @@ max_degree = 3
 parity = "symmetric"
 "#;
 
+/// The published values that come with the program.
+const REFERENCE: &str = include_str!("../demo-data/literature.toml");
+
 #[test]
 fn the_samples_are_valid() {
+    Reference::from_toml(REFERENCE, "sample").unwrap();
     Record::from_json(RECORD, "sample").unwrap();
     Certificate::from_json(CERTIFICATE, "sample").unwrap();
     Plan::parse(PLAN, "sample").unwrap();
@@ -72,6 +78,37 @@ fn parse_plan(text: &str) -> Result<(), String> {
     match Plan::parse(text, "handed-in.toml") {
         Err(error) if error.exit_code() != 2 || !error.to_string().contains("handed-in.toml") => Err(error.chain()),
         _ => Ok(()),
+    }
+}
+
+/// The parser of reference files.
+fn parse_reference(text: &str) -> Result<(), String> {
+    match Reference::from_toml(text, "handed-in.toml") {
+        Err(error) if error.exit_code() != 2 || !error.chain().contains("handed-in.toml") => Err(error.chain()),
+        _ => Ok(()),
+    }
+}
+
+/// Nesting and sizes that exhaust a careless parser.
+#[test]
+fn extreme_expressions_are_refused_quietly() {
+    let deep = ["(".repeat(200_000), "-".repeat(200_000), "sqrt(".repeat(50_000), "((1".repeat(50_000)];
+    let large = [
+        "2^999999999",
+        "9^9^9^9^9",
+        "1e999999999",
+        "zeta(99999999999999999999)",
+        "w^99999999",
+        "1/0",
+        "(1-1)^-1",
+        "sqrt(-4)",
+    ];
+    for text in deep.iter().map(String::as_str).chain(large) {
+        let _ = expression::parse(text);
+        let file = format!(
+            "[[entry]]\nfamily = [4, 2]\none_loop = \"{text}\"\nloop = 1\nvalue = \"{text}\"\ncitation = \"c\"\n"
+        );
+        parse_reference(&file).unwrap();
     }
 }
 
@@ -152,7 +189,7 @@ proptest! {
     #[test]
     fn arbitrary_bytes(bytes in prop::collection::vec(any::<u8>(), 0..400)) {
         let text = String::from_utf8_lossy(&bytes);
-        let outcome = parse(&text).and_then(|()| parse_plan(&text));
+        let outcome = parse(&text).and_then(|()| parse_plan(&text)).and_then(|()| parse_reference(&text));
         prop_assert!(outcome.is_ok(), "{outcome:?}");
     }
 
@@ -183,6 +220,31 @@ proptest! {
         let text = String::from_utf8_lossy(&bytes);
         let outcome = parse_plan(&text);
         prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// An entry with any expression.
+    #[test]
+    fn arbitrary_expressions(one_loop in "[-+*/^(). 0-9w]{0,16}", value in "([-+*/^().0-9 ]|w|zeta|sqrt|pi){0,24}", order in any::<i64>()) {
+        let _ = expression::parse(&value);
+        let text = format!(
+            "[[entry]]\nfamily = [8, 4]\none_loop = \"{one_loop}\"\nloop = {order}\nvalue = \"{value}\"\ncitation = \"c\"\n"
+        );
+        let outcome = parse_reference(&text);
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// The shipped reference file with one stretch of bytes replaced.
+    #[test]
+    fn damaged_references(
+        place in any::<prop::sample::Index>(), length in 0usize..12,
+        filling in prop_oneof!["[-0-9a-zA-Z.,=^()\"\\[\\] \n]{0,12}".prop_map(String::into_bytes), prop::collection::vec(any::<u8>(), 0..12)],
+    ) {
+        let mut bytes = REFERENCE.as_bytes().to_vec();
+        let start = place.index(bytes.len());
+        let end = (start + length).min(bytes.len());
+        bytes.splice(start..end, filling);
+        let outcome = parse_reference(&String::from_utf8_lossy(&bytes));
+        prop_assert!(outcome.is_ok(), "{outcome:?}");
     }
 
     #[test]
