@@ -1,7 +1,10 @@
 //! Parsers of files that people hand in never panic, whatever the bytes are; and they refuse with an
-//! input error that names the file.
+//! input error (exit code 2) that names the file.
 
+use loopladder::compare::Reference;
+use loopladder::compare::expression;
 use loopladder::record::{Certificate, Record, canonical_rational};
+use loopladder::scan::{Plan, parse_range, parse_size};
 use proptest::prelude::{Just, ProptestConfig, Strategy, any, prop, prop_assert, prop_oneof, proptest};
 
 /// A record with every kind of entry.
@@ -20,10 +23,30 @@ const CERTIFICATE: &str = r#"{"certificate":1,"length":4,"magnons":2,"loops":2,"
 "omega":["12"],"pair":[{"order":0,"terms":[{"zeta":[],"q1":[["1/12"],["0"],["1"]],"q2":[["0"],["-1/4"],["0"],["1"]]}]},
 {"order":1,"terms":[{"zeta":[],"q1":[["4/3"],["0"],["0"]],"q2":[["0"],["0"],["0"],["0"]]}]}]}]}"#;
 
+/// A scan plan with every key.
+const PLAN: &str = r#"output = "results"
+threads = 2
+memory = "4 GB"
+certificates = true
+
+[[families]]
+lengths = [4, "6-8"]
+magnons = "2-4"
+loops = 5
+max_primaries = 20
+max_degree = 3
+parity = "symmetric"
+"#;
+
+/// The published values that come with the program.
+const REFERENCE: &str = include_str!("../demo-data/literature.toml");
+
 #[test]
 fn the_samples_are_valid() {
+    Reference::from_toml(REFERENCE, "sample").unwrap();
     Record::from_json(RECORD, "sample").unwrap();
     Certificate::from_json(CERTIFICATE, "sample").unwrap();
+    Plan::parse(PLAN, "sample").unwrap();
 }
 
 /// Both parsers on one text; a refusal is an input error naming the file, an accepted text says the
@@ -46,6 +69,46 @@ fn parse(text: &str) -> Result<(), String> {
         }
         Err(error) if error.exit_code() != 2 || !error.to_string().contains("handed-in.json") => Err(error.chain()),
         _ => Ok(()),
+    }
+}
+
+/// The plan parser and the parsers of the values in a plan.
+fn parse_plan(text: &str) -> Result<(), String> {
+    let _ = (parse_range(text), parse_size(text));
+    match Plan::parse(text, "handed-in.toml") {
+        Err(error) if error.exit_code() != 2 || !error.to_string().contains("handed-in.toml") => Err(error.chain()),
+        _ => Ok(()),
+    }
+}
+
+/// The parser of reference files.
+fn parse_reference(text: &str) -> Result<(), String> {
+    match Reference::from_toml(text, "handed-in.toml") {
+        Err(error) if error.exit_code() != 2 || !error.chain().contains("handed-in.toml") => Err(error.chain()),
+        _ => Ok(()),
+    }
+}
+
+/// Nesting and sizes that exhaust a careless parser.
+#[test]
+fn extreme_expressions_are_refused_quietly() {
+    let deep = ["(".repeat(200_000), "-".repeat(200_000), "sqrt(".repeat(50_000), "((1".repeat(50_000)];
+    let large = [
+        "2^999999999",
+        "9^9^9^9^9",
+        "1e999999999",
+        "zeta(99999999999999999999)",
+        "w^99999999",
+        "1/0",
+        "(1-1)^-1",
+        "sqrt(-4)",
+    ];
+    for text in deep.iter().map(String::as_str).chain(large) {
+        let _ = expression::parse(text);
+        let file = format!(
+            "[[entry]]\nfamily = [4, 2]\none_loop = \"{text}\"\nloop = 1\nvalue = \"{text}\"\ncitation = \"c\"\n"
+        );
+        parse_reference(&file).unwrap();
     }
 }
 
@@ -125,7 +188,62 @@ proptest! {
 
     #[test]
     fn arbitrary_bytes(bytes in prop::collection::vec(any::<u8>(), 0..400)) {
-        let outcome = parse(&String::from_utf8_lossy(&bytes));
+        let text = String::from_utf8_lossy(&bytes);
+        let outcome = parse(&text).and_then(|()| parse_plan(&text)).and_then(|()| parse_reference(&text));
+        prop_assert!(outcome.is_ok(), "{outcome:?}");
+    }
+
+    /// Lines of a plan with any keys and values of the right look.
+    #[test]
+    fn arbitrary_plans(lines in prop::collection::vec(
+        ("(output|threads|memory|certificates|lengths|magnons|loops|families|max_primaries|max_degree|parity|[a-z]{1,6})",
+         "([-0-9a-zA-Z., ]{0,8}|\"[-0-9a-zA-Z. /]{0,8}\"|\\[[-0-9, \"]{0,10}\\]|[0-9]{15,25}|true)", any::<bool>()), 0..8),
+    ) {
+        let line = |(key, value, table): &(String, String, bool)| {
+            if *table { format!("[[{key}]]\n") } else { format!("{key} = {value}\n") }
+        };
+        let text: String = lines.iter().map(line).collect();
+        let outcome = parse_plan(&text).and_then(|()| parse(&text));
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// A valid plan with one stretch of bytes replaced.
+    #[test]
+    fn damaged_plans(
+        place in any::<prop::sample::Index>(), length in 0usize..12,
+        filling in prop_oneof!["[-0-9a-zA-Z.,=\"\\[\\]{} \n]{0,12}".prop_map(String::into_bytes), prop::collection::vec(any::<u8>(), 0..12)],
+    ) {
+        let mut bytes = PLAN.as_bytes().to_vec();
+        let start = place.index(bytes.len());
+        let end = (start + length).min(bytes.len());
+        bytes.splice(start..end, filling);
+        let text = String::from_utf8_lossy(&bytes);
+        let outcome = parse_plan(&text);
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// An entry with any expression.
+    #[test]
+    fn arbitrary_expressions(one_loop in "[-+*/^(). 0-9w]{0,16}", value in "([-+*/^().0-9 ]|w|zeta|sqrt|pi){0,24}", order in any::<i64>()) {
+        let _ = expression::parse(&value);
+        let text = format!(
+            "[[entry]]\nfamily = [8, 4]\none_loop = \"{one_loop}\"\nloop = {order}\nvalue = \"{value}\"\ncitation = \"c\"\n"
+        );
+        let outcome = parse_reference(&text);
+        prop_assert!(outcome.is_ok(), "{text}: {outcome:?}");
+    }
+
+    /// The shipped reference file with one stretch of bytes replaced.
+    #[test]
+    fn damaged_references(
+        place in any::<prop::sample::Index>(), length in 0usize..12,
+        filling in prop_oneof!["[-0-9a-zA-Z.,=^()\"\\[\\] \n]{0,12}".prop_map(String::into_bytes), prop::collection::vec(any::<u8>(), 0..12)],
+    ) {
+        let mut bytes = REFERENCE.as_bytes().to_vec();
+        let start = place.index(bytes.len());
+        let end = (start + length).min(bytes.len());
+        bytes.splice(start..end, filling);
+        let outcome = parse_reference(&String::from_utf8_lossy(&bytes));
         prop_assert!(outcome.is_ok(), "{outcome:?}");
     }
 
