@@ -305,7 +305,7 @@ twistconstant(L) = { my(root = sqrt(1 + 4*tau + O(tau^(L + 1)))); polcoef(((1 + 
 
 \\ What is added to the asymptotic coefficient for a singular state: the twist limit.
 wrappingsingular(L, M, Q) =
-{ my(terms = 2*L + 4, pair, c, G, rho, w, value);
+{ my(terms = 3*L + 1, pair, c, G, rho, w, value);
   while (1,
     pair = twistedpair(L, M, Q, terms); c = pair[2]; G = pair[3];
     rho = 1 + tau + O(tau^terms);
