@@ -13,6 +13,7 @@ pub mod solver;
 mod start;
 mod sweep;
 mod tail;
+pub mod traces;
 mod unknowns;
 
 #[cfg(test)]
