@@ -1,5 +1,6 @@
 //! Loops past the wrapping order, from the quantum spectral curve.
 
+pub mod extend;
 pub mod frame;
 pub mod basis;
 mod gluing;
@@ -8,7 +9,9 @@ mod laurent;
 pub mod one_loop;
 pub mod mzv;
 mod pivots;
+pub mod plan;
 pub mod relation;
+mod resume;
 pub mod solver;
 mod start;
 mod sweep;
