@@ -32,7 +32,7 @@ trait Steps {
 
 impl<S: loopladder::algebra::flint::dense::Scalar> Steps for Solver<S> {
     fn step(&mut self) -> (Float, f64) {
-        self.advance().expect("order");
+        self.advance(None).expect("order");
         (self.gamma().last().expect("value").to_float(3000), *self.consistency().last().expect("value"))
     }
 }

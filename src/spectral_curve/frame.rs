@@ -23,8 +23,8 @@ pub struct Frame {
     pub terms: usize,
 }
 
-/// The digits lost per order of the coupling, generously.
-const LOST_PER_ORDER: f64 = 3.0;
+/// Working digits beyond those asked for: a fixed part, and one for each order and each two fields.
+const GUARD: f64 = 12.0;
 
 impl Frame {
     /// The frame for `orders` orders at about `digits` certain digits.
@@ -33,7 +33,7 @@ impl Frame {
     /// smallest term kept; N is a fixed multiple of the digits that balances the cost of the
     /// recursion, ∝ N, against that of the expansions, ∝ K².
     pub fn new(family: Family, symmetric: bool, orders: usize, digits: u32) -> Frame {
-        let working = f64::from(digits) + LOST_PER_ORDER * orders as f64 + family.length as f64 + 10.0;
+        let working = f64::from(digits) + orders as f64 + family.length as f64 / 2.0 + GUARD;
         let points = (2.6 * working).ceil() as usize + 2 * family.length + 10;
         let step = if symmetric { 2 } else { 1 };
         let growth = 2.0 * std::f64::consts::PI * std::f64::consts::E * (points as f64 + 0.5);

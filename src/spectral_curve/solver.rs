@@ -14,6 +14,15 @@ use crate::error::{Error, Result};
 use rayon::prelude::*;
 use rug::{Float, Rational};
 
+/// What one stage determines.
+#[derive(Clone)]
+pub struct Stage {
+    /// The real unknowns, in the order of `Unknown::of_stage`.
+    pub values: Vec<Real>,
+    /// Digits by which the overdetermined conditions agree.
+    pub consistency: f64,
+}
+
 /// The leading-order response of the solution to δp_a = v^exponent.
 struct Response<S> {
     a: usize,
@@ -105,7 +114,8 @@ impl<S: Scalar> Solver<S> {
             .chain([(0, -1), (2, solver.frame.degrees()[2])])
             .map(|(a, exponent)| solver.response(a, exponent))
             .collect::<Result<_>>()?;
-        solver.glue(0)?;
+        let stage = solver.solve_stage(0)?;
+        solver.enter(0, &stage);
         Ok(solver)
     }
 
@@ -203,35 +213,54 @@ impl<S: Scalar> Solver<S> {
         Ok(Response { a, exponent, tails, end })
     }
 
-    /// Solves the next order; the last one stops as soon as γ_n is known.
+    /// Solves the next order, or enters it when its unknowns are already known from an interrupted
+    /// run; the last order stops as soon as γ_n is known. Returns what was solved for.
     ///
     /// # Errors
     /// A check failure when the gluing conditions do not determine the unknowns or contradict each other.
-    pub fn advance(&mut self) -> Result<()> {
+    pub fn advance(&mut self, known: Option<Stage>) -> Result<Stage> {
         let n = self.orders.len();
         self.enter_leading(n);
-        self.lowered.push(std::array::from_fn(|a| self.functions.lowered(&self.frame, a, n)));
-        self.raised.push(std::array::from_fn(|b| self.functions.raised(&self.frame, b, n)));
+        self.expand_functions(n);
+        let known = known.filter(|stage| stage.values.len() == Unknown::of_stage(&self.frame, n).len());
+        if let (Some(stage), true) = (&known, n == self.frame.orders) {
+            self.enter(n, stage);
+            return Ok(stage.clone());
+        }
         let mut tails = self.tails_of_order(n)?;
-        let order = self.carry(n, self.frame.wrap() + 1, &tails);
-        self.orders.push(order);
-        let changes = self.glue(n)?;
+        let stage = match known {
+            Some(stage) => stage,
+            None => {
+                let order = self.carry(n, self.frame.wrap() + 1, &tails);
+                self.orders.push(order);
+                let stage = self.solve_stage(n)?;
+                self.orders.pop();
+                stage
+            }
+        };
+        let changes = self.enter(n, &stage);
         if n == self.frame.orders {
-            return Ok(());
+            return Ok(stage);
         }
         for (index, factor) in &changes {
             for (tail, response) in tails.iter_mut().zip(&self.responses[*index].tails) {
                 tail.add_scaled(response, factor, self.frame.bits);
             }
         }
-        self.lowered[n] = std::array::from_fn(|a| self.functions.lowered(&self.frame, a, n));
-        self.raised[n] = std::array::from_fn(|b| self.functions.raised(&self.frame, b, n));
-        self.orders.pop();
+        self.expand_functions(n);
         let order = self.carry(n, self.frame.window(n), &tails);
         self.tails.push(tails);
         self.orders.push(order);
         self.update_cut(n);
-        Ok(())
+        Ok(stage)
+    }
+
+    /// Expands P_a at order n from the coefficients entered so far.
+    fn expand_functions(&mut self, n: usize) {
+        self.lowered.truncate(n);
+        self.raised.truncate(n);
+        self.lowered.push(std::array::from_fn(|a| self.functions.lowered(&self.frame, a, n)));
+        self.raised.push(std::array::from_fn(|b| self.functions.raised(&self.frame, b, n)));
     }
 
     fn update_cut(&mut self, n: usize) {
@@ -269,17 +298,21 @@ impl<S: Scalar> Solver<S> {
         self.functions.pole[0][n - 1][1] = S::from_real(&first);
     }
 
-    /// Sets up and solves the gluing conditions of stage n and enters the unknowns. Returns the
-    /// coefficients by which the responses (index, factor) enter order n.
-    fn glue(&mut self, n: usize) -> Result<Vec<(usize, S)>> {
+    /// Room for the coefficients of the gluing matrix through order n.
+    fn reserve(&mut self, n: usize) {
         for list in [&mut self.alpha, &mut self.beta, &mut self.delta].into_iter().chain(self.rho.iter_mut().flatten()) {
             while list.len() <= n {
                 list.push(S::zero());
             }
         }
+    }
+
+    /// Sets up and solves the gluing conditions of stage n.
+    fn solve_stage(&mut self, n: usize) -> Result<Stage> {
+        self.reserve(n);
         self.update_cut(n);
         let unknowns = Unknown::of_stage(&self.frame, n);
-        let columns: Vec<Column<S>> = unknowns.iter().map(|unknown| self.column(n, *unknown)).collect();
+        let columns: Vec<Column<S>> = unknowns.iter().map(|unknown| self.column(*unknown)).collect();
         let wrap = self.frame.wrap() as i64;
         let last = n as i64 + wrap;
         let places: Vec<(i64, i64)> =
@@ -297,13 +330,21 @@ impl<S: Scalar> Solver<S> {
         let Some(solution) = system.solve(unknowns.len(), self.frame.bits) else {
             return Err(self.failed(n, "the gluing conditions do not determine all unknowns"));
         };
-        let digits = -(solution.inconsistency as f64) * std::f64::consts::LOG10_2;
-        self.consistency.push(digits);
-        if digits < 10.0 {
-            return Err(self.failed(n, &format!("the overdetermined gluing conditions agree to {digits:.1} digits only")));
+        let consistency = -(solution.inconsistency as f64) * std::f64::consts::LOG10_2;
+        if consistency < 10.0 {
+            return Err(self.failed(n, &format!("the overdetermined gluing conditions agree to {consistency:.1} digits only")));
         }
+        Ok(Stage { values: solution.values, consistency })
+    }
+
+    /// Enters the unknowns of stage n. Returns the coefficients by which the responses (index, factor)
+    /// enter order n.
+    fn enter(&mut self, n: usize, stage: &Stage) -> Vec<(usize, S)> {
+        self.reserve(n);
+        self.consistency.push(stage.consistency);
+        let unknowns = Unknown::of_stage(&self.frame, n);
         let mut changes = Vec::new();
-        for (unknown, value) in unknowns.iter().zip(&solution.values) {
+        for (unknown, value) in unknowns.iter().zip(&stage.values) {
             let mut number = S::from_real(value);
             number.turn(unknown.phase(&self.frame));
             match *unknown {
@@ -331,7 +372,7 @@ impl<S: Scalar> Solver<S> {
         if n >= 2 {
             self.enter_leading(n);
         }
-        Ok(changes)
+        changes
     }
 
     fn response_index(&self, a: usize, exponent: i64) -> usize {
@@ -367,7 +408,7 @@ impl<S: Scalar> Solver<S> {
         sum
     }
 
-    fn column(&self, n: usize, unknown: Unknown) -> Column<S> {
+    fn column(&self, unknown: Unknown) -> Column<S> {
         let bits = self.frame.bits;
         let mut one = S::from_real(&Real::from_i64(1));
         one.turn(unknown.phase(&self.frame));
@@ -417,7 +458,6 @@ impl<S: Scalar> Solver<S> {
                 if bar { column.bar.push(sum) } else { column.plus.push(sum) }
             }
         }
-        debug_assert!(n >= 1);
         column
     }
 

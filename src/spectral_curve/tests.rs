@@ -32,7 +32,7 @@ fn konishi_first_loops() {
     let start = std::time::Instant::now();
     let mut solver = Solver::<Real>::new(frame, &state).unwrap();
     for _ in 1..=6 {
-        solver.advance().unwrap();
+        solver.advance(None).unwrap();
         eprintln!("{:?} {:?}", solver.gamma().last().unwrap().to_float(120), solver.consistency());
     }
     eprintln!("{:?}", start.elapsed());

@@ -97,8 +97,6 @@ pub struct Solution<R> {
     pub values: Vec<R>,
     /// log₂ of the largest left-over constant, relative to the largest constant.
     pub inconsistency: i64,
-    /// log₂ of the smallest pivot relative to its column's largest entry.
-    pub weakest_pivot: i64,
 }
 
 impl System<crate::algebra::flint::dense::Real> {
@@ -115,7 +113,6 @@ impl System<crate::algebra::flint::dense::Real> {
     pub fn solve(mut self, columns: usize, bits: i64) -> Option<Solution<crate::algebra::flint::dense::Real>> {
         use crate::algebra::flint::dense::Real;
         let size = self.rows.iter().map(|row| row[columns].magnitude()).max().unwrap_or(0);
-        let mut weakest = 0;
         for column in 0..columns {
             let before = (0..self.rows.len()).map(|r| self.rows[r][column].magnitude()).max().unwrap_or(0);
             let pivot = (column..self.rows.len()).max_by_key(|&r| self.rows[r][column].magnitude())?;
@@ -123,7 +120,6 @@ impl System<crate::algebra::flint::dense::Real> {
             if found < before - bits + 40 || self.rows[pivot][column].is_zero() {
                 return None;
             }
-            weakest = weakest.min(found - before);
             self.rows.swap(column, pivot);
             let (head, tail) = self.rows.split_at_mut(column + 1);
             let pivot_row = &head[column];
@@ -148,6 +144,6 @@ impl System<crate::algebra::flint::dense::Real> {
             sum.negate();
             values[column] = sum.div(&row[column], bits);
         }
-        Some(Solution { values, inconsistency: left - size, weakest_pivot: weakest })
+        Some(Solution { values, inconsistency: left - size })
     }
 }
