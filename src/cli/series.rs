@@ -1,11 +1,12 @@
 //! `loopladder series`: the loop coefficients of one family.
 
 use super::{Console, Progress, in_pool, interrupt};
-use crate::engine::{self, NoCheckpoint, Request};
+use crate::engine::{self, Checkpoint, NoCheckpoint, Request};
 use crate::error::{Error, Result};
 use crate::family::Family;
 use crate::report::coupling::Coupling;
 use crate::report::text;
+use crate::scan::{Journal, parse_size};
 use std::path::PathBuf;
 use std::time::Duration;
 
@@ -17,7 +18,7 @@ pub struct Arguments {
     length: usize,
     /// The number M of magnons, 0 to L/2
     magnons: usize,
-    /// The highest loop order; L when not given
+    /// The highest loop order; L when not given. Loops past L come from the spectral curve
     #[arg(long, value_name = "N")]
     loops: Option<usize>,
     /// At loop L give only the asymptotic part, labelled as such
@@ -35,6 +36,12 @@ pub struct Arguments {
     /// Also write the certificate for `audit` to this file
     #[arg(long, value_name = "FILE")]
     certificate: Option<PathBuf>,
+    /// Memory bound for the computation, such as 512M or 2G
+    #[arg(long, value_name = "SIZE")]
+    memory: Option<String>,
+    /// Keep finished stages of a long computation in this file, and go on from them
+    #[arg(long, value_name = "FILE")]
+    keep: Option<PathBuf>,
     /// Threads; all cores when not given
     #[arg(long, value_name = "T")]
     threads: Option<usize>,
@@ -62,9 +69,15 @@ pub fn run(arguments: &Arguments, console: &Console) -> Result<()> {
     request.check()?;
     interrupt::listen(Duration::from_millis(1500))?;
     let progress = Progress::new(console);
-    let outcome = in_pool(arguments.threads, || engine::compute(&request, None, &NoCheckpoint, &progress));
+    let memory = arguments.memory.as_deref().map(parse_size).transpose()?;
+    let journal = arguments.keep.as_deref().map(|path| Journal::open(path, &format!("series {family}")));
+    let checkpoint: &dyn Checkpoint = journal.as_ref().map_or(&NoCheckpoint, |journal| journal);
+    let outcome = in_pool(arguments.threads, || engine::compute(&request, memory, checkpoint, &progress));
     progress.finish();
     let outcome = outcome?;
+    if let Some(journal) = journal {
+        journal.remove();
+    }
     if let Some(path) = &arguments.certificate {
         let Some(certificate) = &outcome.certificate else {
             return Err(Error::input(format!(

@@ -5,6 +5,7 @@
 //! the numbers in between, over the field, are huge: this is why images and not Q-arithmetic.)
 
 mod assemble;
+mod beyond;
 mod checkpoint;
 mod cost;
 mod image;
@@ -28,7 +29,7 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 pub struct Request {
     /// The family.
     pub family: Family,
-    /// The highest loop order n; at most L.
+    /// The highest loop order n. Through L the coefficients are exact; later ones come from the spectral curve.
     pub loops: usize,
     /// At loop L give the asymptotic part only, labelled as such, instead of the complete coefficient.
     pub incomplete: bool,
@@ -37,6 +38,9 @@ pub struct Request {
     /// Also make the certificate for the audit.
     pub certificate: bool,
 }
+
+/// More loops than this are refused: a typo is likelier.
+pub const MOST_LOOPS: usize = 240;
 
 impl Request {
     /// All orbits of a family through `loops`, complete, without a certificate.
@@ -47,15 +51,20 @@ impl Request {
     /// Refuses what cannot be answered.
     ///
     /// # Errors
-    /// No loops at all, or more loops than the asymptotic equations and the leading finite-size term give.
+    /// No loops at all, absurdly many, or an asymptotic part past the order where it has a meaning.
     pub fn check(&self) -> Result<()> {
         let Request { family, loops, .. } = self;
         if *loops == 0 {
             return Err(Error::input(format!("family {family}: 0 loops were asked for; ask for at least one")));
         }
-        if !family.is_protected() && *loops > family.length {
+        if *loops > MOST_LOOPS {
             return Err(Error::input(format!(
-                "family {family}: {loops} loops were asked for, and with the leading finite-size term the exact series is complete through loop L = {}; ask for at most {}",
+                "family {family}: {loops} loops were asked for, and the limit is {MOST_LOOPS}; ask for fewer"
+            )));
+        }
+        if !family.is_protected() && *loops > family.length && self.incomplete {
+            return Err(Error::input(format!(
+                "family {family}: the asymptotic part was asked for at {loops} loops, and it exists through loop L = {} only; ask for at most {} loops, or leave out --incomplete",
                 family.length, family.length
             )));
         }
@@ -84,8 +93,10 @@ pub fn compute(
 ) -> Result<Outcome> {
     request.check()?;
     let family = request.family;
+    let asked = request;
+    let request = &Request { loops: asked.loops.min(family.length), ..asked.clone() };
     if family.is_protected() {
-        return Ok(Outcome { record: assemble::protected(family, request.loops), certificate: None });
+        return Ok(Outcome { record: assemble::protected(family, asked.loops), certificate: None });
     }
     let orbits = chain::spectrum(family, observer)?;
     let chosen: Vec<&Orbit> =
@@ -115,7 +126,10 @@ pub fn compute(
         })
         .collect();
     let lifted = results.into_iter().collect::<Result<Vec<_>>>()?;
-    let record = assemble::record(request, &grading, orbits.iter().map(Orbit::members).sum(), &lifted)?;
+    let mut record = assemble::record(request, &grading, orbits.iter().map(Orbit::members).sum(), &lifted)?;
+    if asked.loops > family.length {
+        beyond::extend(&mut record, asked.loops, &chosen, memory, checkpoint, observer)?;
+    }
     record
         .check("the record just computed")
         .map_err(|error| Error::check("an internal check failed").because(error))?;
