@@ -227,3 +227,63 @@ fn a_full_disk_is_said_and_the_next_run_completes() {
     assert!(scan(&plan, &place.path().join("quiet"), &[]).status.success());
     assert_eq!(contents(disk.path()), contents(&place.path().join("quiet")));
 }
+
+/// Inside one long family, with the engine: the next run goes on from the primes that were finished.
+#[test]
+fn a_long_family_goes_on_from_its_primes() {
+    let place = tempfile::tempdir().unwrap();
+    let plan = plan(place.path(), "[[families]]\nlengths = 12\nmagnons = 5\n");
+    let killed = place.path().join("killed");
+    let mut child = program()
+        .args(["scan", &plan, "--threads", "1", "--out"])
+        .arg(&killed)
+        .stdout(Stdio::null())
+        .stderr(Stdio::null())
+        .spawn()
+        .unwrap();
+    let units = killed.join(".work/L12M05.units");
+    let begin = Instant::now();
+    while std::fs::metadata(&units).map_or(0, |file| file.len()) < 1000 {
+        assert!(begin.elapsed() < Duration::from_secs(60) && child.try_wait().unwrap().is_none());
+        std::thread::sleep(Duration::from_millis(2));
+    }
+    child.kill().unwrap();
+    child.wait().unwrap();
+    assert!(!killed.join("L12M05.json").exists());
+    let again = scan(&plan, &killed, &["--threads", "2"]);
+    assert!(again.status.success(), "{}", err(&again));
+    assert!(err(&again).contains("(12, 5): going on from "), "{}", err(&again));
+    assert!(scan(&plan, &place.path().join("quiet"), &[]).status.success());
+    assert_eq!(contents(&place.path().join("quiet")), contents(&killed));
+}
+
+#[test]
+fn certificates_tables_and_filters_from_one_plan() {
+    let place = tempfile::tempdir().unwrap();
+    let plan = plan(
+        place.path(),
+        "certificates = true\nexport = [\"csv\", \"html\"]\n\
+         [[families]]\nlengths = \"4-7\"\n\
+         [[families]]\nlengths = 9\nmagnons = 4\nparity = \"symmetric\"\n\
+         [[families]]\nlengths = 8\nmagnons = 3\nloops = 4\nmax_degree = 1\n",
+    );
+    let results = place.path().join("results");
+    let output = scan(&plan, &results, &[]);
+    assert!(output.status.success(), "{}", err(&output));
+    let names: Vec<String> = contents(&results).into_keys().collect();
+    // (9, 4): two symmetric primaries in one orbit, one pair left out. (8, 3): one rational singular
+    // state, and a pair of degree 1 (both with gamma_1 rational).
+    assert!(
+        names.iter().any(|name| name.starts_with("L09M04-")) && !names.contains(&"L09M04.json".to_string()),
+        "{names:?}"
+    );
+    for name in ["L04M02.json", "L04M02.certificate.json", "L07M03.json", "table.csv", "table.html"] {
+        assert!(names.contains(&name.to_string()), "{name} is missing: {names:?}");
+    }
+    let audit = program().arg("audit").arg(&results).output().unwrap();
+    assert!(audit.status.success(), "{}{}", out(&audit), err(&audit));
+    // Changing nothing changes nothing.
+    let before = contents(&results);
+    assert!(scan(&plan, &results, &[]).status.success());
+    assert_eq!(before, contents(&results));
+}

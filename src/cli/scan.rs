@@ -3,6 +3,8 @@
 use super::progress::Progress;
 use super::{Console, interrupt};
 use crate::error::{Error, Result};
+use crate::record::{Record, read_all, write_atomically};
+use crate::report::export::{Format, Options, export};
 use crate::scan::{
     Calculator, Item, Plan, Settings, Shard, State, parse_size, prepare, run as run_scan, show_size, show_time, survey,
 };
@@ -24,7 +26,7 @@ A plan is a TOML file:
   max_primaries = 20         # larger families are left out
   max_degree = 3             # orbits of higher degree are left out
   parity = \"symmetric\"       # or \"paired\": the other orbits are left out
-and threads, memory, certificates at the top.
+and at the top: threads, memory, certificates, export = [\"html\", \"csv\"] (tables at the end).
 
 Complete records are kept; damaged ones are moved aside. Several scans may share a directory.
 Exit codes: 0 all complete, 1 some families failed, 2 mistake in the plan, 6 cannot store, 7 interrupted.")]
@@ -74,7 +76,35 @@ fn run_with(arguments: &Arguments, console: &Console, calculator: Arc<dyn Calcul
     progress.finish();
     let summary = summary?;
     console.result(&summary.text())?;
+    if shard.is_none() && !summary.interrupted && summary.storage.is_none() {
+        export_tables(&plan, &settings, console)?;
+    }
     summary.verdict()
+}
+
+/// Writes the tables that the plan asks for, of the plan's families, beside the records.
+fn export_tables(plan: &Plan, settings: &Settings, console: &Console) -> Result<()> {
+    if plan.export.is_empty() {
+        return Ok(());
+    }
+    let wanted = |record: &Record| {
+        plan.tasks.iter().any(|task| (task.family.length, task.family.magnons) == (record.length, record.magnons))
+    };
+    let records = read_all(&settings.directory)?.into_iter().map(|(_, record)| record).filter(wanted);
+    let records: Vec<Record> = records.collect();
+    for format in &plan.export {
+        let name = match format {
+            Format::Latex => "table.tex",
+            Format::Markdown => "table.md",
+            Format::Csv => "table.csv",
+            Format::Json => "table.json",
+            Format::Html => "table.html",
+        };
+        let path = settings.directory.join(name);
+        write_atomically(&path, export(&records, *format, &Options::default())?.as_bytes())?;
+        console.message(&format!("wrote {}", path.display()));
+    }
+    Ok(())
 }
 
 fn settings(arguments: &Arguments, plan: &Plan) -> Result<Settings> {
@@ -145,12 +175,13 @@ fn preview(
             100.0 * sum(items) / sum(whole).max(1e-9)
         ));
     }
+    let workers = settings.workers();
     text.push_str(&format!(
         "{missing} of {} to compute: about {} on 1 core, {} on {} threads\n",
         items.len(),
         show_time(seconds),
-        show_time(seconds / settings.threads as f64),
-        settings.threads
+        show_time(seconds / workers as f64),
+        workers
     ));
     Ok(text)
 }

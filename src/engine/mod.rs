@@ -21,7 +21,7 @@ use crate::error::{Error, Result};
 use crate::family::Family;
 use crate::observer::{Event, Observer};
 use crate::record::{Certificate, Record};
-use rayon::iter::{IntoParallelRefIterator, ParallelIterator};
+use rayon::iter::{IntoParallelIterator, IntoParallelRefIterator, ParallelIterator};
 use std::sync::atomic::{AtomicUsize, Ordering};
 
 /// What is asked for.
@@ -111,20 +111,23 @@ pub fn compute(
     observer.event(Event::Stage { family: family.to_string(), stage: "lift" });
     let grading = Grading::new(request.loops.min(family.length) - 1);
     let finished = AtomicUsize::new(0);
-    let results: Vec<Result<orbit::Lifted>> = chosen
-        .par_iter()
-        .map(|one| {
-            let lifted = orbit::lift(request, one, &grading, memory, checkpoint, observer)?;
-            let done = finished.fetch_add(1, Ordering::Relaxed) + 1;
-            observer.event(Event::OrbitDone {
-                family: family.to_string(),
-                orbit: one.label.clone(),
-                done,
-                total: chosen.len(),
-            });
-            Ok(lifted)
-        })
-        .collect();
+    let lift = |index: usize| {
+        let one = chosen[index];
+        let lifted = orbit::lift(request, one, &grading, memory, checkpoint, observer)?;
+        let done = finished.fetch_add(1, Ordering::Relaxed) + 1;
+        observer.event(Event::OrbitDone {
+            family: family.to_string(),
+            orbit: one.label.clone(),
+            done,
+            total: chosen.len(),
+        });
+        Ok(lifted)
+    };
+    // Under a memory bound one orbit at a time, so that the bound on its primes is the bound on all.
+    let results: Vec<Result<orbit::Lifted>> = match memory {
+        None => (0..chosen.len()).into_par_iter().map(lift).collect(),
+        Some(_) => (0..chosen.len()).map(lift).collect(),
+    };
     let lifted = results.into_iter().collect::<Result<Vec<_>>>()?;
     let mut record = assemble::record(request, &grading, orbits.iter().map(Orbit::members).sum(), &lifted)?;
     if asked.loops > family.length {

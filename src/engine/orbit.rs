@@ -90,7 +90,7 @@ pub fn lift<'a>(
     Ok(Lifted { orbit, singular: singular.unwrap_or(false), values, pair })
 }
 
-/// The images of a range of primes, from the checkpoint where they are there.
+/// The images of a range of primes, each from the checkpoint where it is there.
 fn images(
     request: &Request,
     orbit: &Orbit,
@@ -100,72 +100,70 @@ fn images(
     checkpoint: &dyn Checkpoint,
     observer: &dyn Observer,
 ) -> Result<Vec<(usize, Option<Image>)>> {
-    let key = format!(
-        "{}-loops{}{}{}-primes{}-{}",
+    let subject = format!(
+        "{}-loops{}{}{}",
         orbit.label,
         request.loops,
         if request.incomplete { "a" } else { "" },
         if request.certificate { "c" } else { "" },
-        range.start,
-        range.end
     );
-    if let Some(images) = checkpoint.load(&key).and_then(|bytes| decode(&bytes, range.clone())) {
-        return Ok(images);
-    }
+    let one = |index: usize| {
+        observer.proceed()?;
+        let key = format!("{subject}-prime{index}");
+        if let Some(image) = checkpoint.load(&key).and_then(|bytes| decode(&bytes)) {
+            return Ok((index, image));
+        }
+        let image = image::image(request, orbit, grading, PrimeField::nth(index))?;
+        checkpoint.store(&key, &encode(image.as_ref()))?;
+        Ok((index, image))
+    };
     let indices: Vec<usize> = range.collect();
     let mut images = Vec::with_capacity(indices.len());
     for chunk in indices.chunks(parallel) {
-        let part: Vec<Result<(usize, Option<Image>)>> = chunk
-            .to_vec()
-            .into_par_iter()
-            .map(|index| {
-                observer.proceed()?;
-                Ok((index, image::image(request, orbit, grading, PrimeField::nth(index))?))
-            })
-            .collect();
+        let part: Vec<Result<(usize, Option<Image>)>> = chunk.to_vec().into_par_iter().map(one).collect();
         images.extend(part.into_iter().collect::<Result<Vec<_>>>()?);
     }
-    checkpoint.store(&key, &encode(&images))?;
     Ok(images)
 }
 
-/// Words: for each prime 0 (bad) or 1 + singular, then the two lengths and the residues.
-fn encode(images: &[(usize, Option<Image>)]) -> Vec<u8> {
-    let mut words: Vec<u64> = Vec::new();
-    for (_, image) in images {
-        match image {
-            None => words.push(0),
-            Some(image) => {
-                words.extend([1 + u64::from(image.singular), image.values.len() as u64, image.pair.len() as u64]);
-                words.extend(&image.values);
-                words.extend(&image.pair);
-            }
-        }
-    }
+/// Words: 0 for a bad prime, or 1 + singular, then the number of values, and all residues.
+fn encode(image: Option<&Image>) -> Vec<u8> {
+    let words: Vec<u64> = match image {
+        None => vec![0],
+        Some(image) => [1 + u64::from(image.singular), image.values.len() as u64]
+            .into_iter()
+            .chain(image.values.iter().chain(&image.pair).copied())
+            .collect(),
+    };
     words.iter().flat_map(|word| word.to_le_bytes()).collect()
 }
 
-fn decode(bytes: &[u8], range: std::ops::Range<usize>) -> Option<Vec<(usize, Option<Image>)>> {
-    let words: Vec<u64> = bytes
-        .chunks_exact(8)
-        .map(|chunk| chunk.try_into().map(u64::from_le_bytes))
-        .collect::<std::result::Result<_, _>>()
-        .ok()?;
-    let mut words = words.into_iter();
-    let mut images = Vec::new();
-    for index in range {
-        let image = match words.next()? {
-            0 => None,
-            flag => {
-                let (values, pair) = (words.next()? as usize, words.next()? as usize);
-                let mut take = |n: usize| -> Option<Vec<u64>> {
-                    let part: Vec<u64> = words.by_ref().take(n).collect();
-                    (part.len() == n).then_some(part)
-                };
-                Some(Image { singular: flag == 2, values: take(values)?, pair: take(pair)? })
-            }
-        };
-        images.push((index, image));
+/// The opposite of [`encode`]; `None` when the bytes are something else.
+fn decode(bytes: &[u8]) -> Option<Option<Image>> {
+    let (chunks, rest) = bytes.as_chunks::<8>();
+    let words: Vec<u64> = chunks.iter().map(|chunk| u64::from_le_bytes(*chunk)).collect();
+    match words.as_slice() {
+        [0] if rest.is_empty() => Some(None),
+        [flag @ 1..=2, count, residues @ ..] if rest.is_empty() => {
+            let (values, pair) = residues.split_at_checked(usize::try_from(*count).ok()?)?;
+            Some(Some(Image { singular: *flag == 2, values: values.to_vec(), pair: pair.to_vec() }))
+        }
+        _ => None,
     }
-    words.next().is_none().then_some(images)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn work_units_come_back_as_they_were() {
+        let image = Image { singular: true, values: vec![1, u64::MAX, 3], pair: vec![7] };
+        let bytes = encode(Some(&image));
+        assert_eq!(decode(&bytes), Some(Some(image)));
+        assert_eq!(decode(&encode(None)), Some(None));
+        for cut in (0..bytes.len()).filter(|cut| *cut != bytes.len() - 8) {
+            assert_eq!(decode(&bytes[..cut]), None, "{cut}");
+        }
+    }
 }

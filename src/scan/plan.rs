@@ -5,6 +5,7 @@
 //! threads = 2                   # or --threads
 //! memory = "2G"                 # or --memory
 //! certificates = true           # or --certificates
+//! export = ["html", "csv"]      # tables of this plan's families, written at the end
 //!
 //! [[families]]
 //! lengths = [4, "6-8"]          # a number, a range, or a list of these
@@ -22,6 +23,7 @@ use super::values::{self, Range};
 use crate::error::{Error, Result};
 use crate::family::{Family, LONGEST};
 use crate::record::Parity;
+use crate::report::export::Format;
 use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use toml::Spanned;
@@ -38,6 +40,8 @@ pub struct Plan {
     pub memory: Option<u64>,
     /// Whether certificates are stored beside the records.
     pub certificates: bool,
+    /// Report formats written at the end.
+    pub export: Vec<Format>,
     /// What to compute, ascending in (L, M).
     pub tasks: Vec<Task>,
 }
@@ -74,7 +78,7 @@ impl Filter {
     }
 }
 
-const TOP: [&str; 5] = ["output", "threads", "memory", "certificates", "families"];
+const TOP: [&str; 6] = ["output", "threads", "memory", "certificates", "export", "families"];
 const TABLE: [&str; 6] = ["lengths", "magnons", "loops", "max_primaries", "max_degree", "parity"];
 
 impl Plan {
@@ -124,8 +128,9 @@ impl Plan {
                 )
             })?,
         };
+        let export = get("export").map(|v| formats(source, v)).transpose()?.unwrap_or_default();
         let tasks = tasks(source, get("families"))?;
-        Ok(Plan { output, threads, memory, certificates, tasks })
+        Ok(Plan { output, threads, memory, certificates, export, tasks })
     }
 }
 
@@ -148,6 +153,36 @@ fn memory_of(source: Source, value: &Spanned<DeValue>) -> Result<u64> {
     }
     let text = text_of(source, "memory", value)?;
     values::parse_size(&text).map_err(|error| source.refuse(value.span().start, error.to_string()))
+}
+
+/// The formats by name.
+const FORMATS: [(&str, Format); 5] = [
+    ("latex", Format::Latex),
+    ("markdown", Format::Markdown),
+    ("csv", Format::Csv),
+    ("json", Format::Json),
+    ("html", Format::Html),
+];
+
+fn formats(source: Source, value: &Spanned<DeValue>) -> Result<Vec<Format>> {
+    let known = FORMATS.map(|(name, _)| name).join(", ");
+    let Some(items) = value.get_ref().as_array() else {
+        let what = format!("export is not a list; write for example [\"csv\"], from {known}");
+        return Err(source.refuse(value.span().start, what));
+    };
+    let mut formats = Vec::new();
+    for item in items.iter() {
+        let name = text_of(source, "export", item)?;
+        let offset = item.span().start;
+        let Some((_, format)) = FORMATS.into_iter().find(|(known, _)| *known == name) else {
+            return Err(source.refuse(offset, format!("export names \"{name}\"; the formats are {known}")));
+        };
+        if formats.contains(&format) {
+            return Err(source.refuse(offset, format!("export names \"{name}\" twice; remove one")));
+        }
+        formats.push(format);
+    }
+    Ok(formats)
 }
 
 /// Expands all [[families]] tables; a family asked for twice must be asked for in the same way.
@@ -310,13 +345,14 @@ mod tests {
     #[test]
     fn every_key_arrives() {
         let plan = Plan::parse(
-            "output = \"out\"\nthreads = 3\nmemory = \"2G\"\ncertificates = true\n\
+            "output = \"out\"\nthreads = 3\nmemory = \"2G\"\ncertificates = true\nexport = [\"csv\"]\n\
              [[families]]\nlengths = 8\nmagnons = 3\nloops = 5\nmax_degree = 2\nparity = \"paired\"\n",
             "plan.toml",
         )
         .unwrap();
         assert_eq!(plan.output, Some(PathBuf::from("out")));
         assert_eq!((plan.threads, plan.memory, plan.certificates), (Some(3), Some(2 << 30), true));
+        assert_eq!(plan.export, [Format::Csv]);
         let task = &plan.tasks[0];
         assert_eq!(task.limit, Some(5));
         assert!(task.filter.admits(2, Parity::Paired) && !task.filter.admits(3, Parity::Paired));
@@ -348,6 +384,9 @@ mod tests {
             ("[[families]]\nlengths = 6\nparity = \"odd\"", "3:10", "\"symmetric\" or \"paired\""),
             ("threads = 0\n[[families]]\nlengths = 4", "1:11", "threads = 0"),
             ("memory = \"2X\"\n[[families]]\nlengths = 4", "1:10", "memory size"),
+            ("export = \"csv\"\n[[families]]\nlengths = 4", "1:10", "not a list"),
+            ("export = [\"csv\", \"pdf\"]\n[[families]]\nlengths = 4", "1:18", "the formats are latex"),
+            ("export = [\"csv\", \"csv\"]\n[[families]]\nlengths = 4", "1:18", "twice"),
             ("certificates = 1\n[[families]]\nlengths = 4", "1:16", "true or false"),
             ("[[families]]\nlengths = 4\nlengths = 5", "3:1", "TOML"),
             (

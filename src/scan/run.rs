@@ -54,6 +54,13 @@ pub struct Settings {
     pub certificates: bool,
 }
 
+impl Settings {
+    /// How many threads can really run at once: for estimates.
+    pub fn workers(&self) -> usize {
+        std::thread::available_parallelism().map_or(self.threads, |cores| self.threads.min(cores.get())).max(1)
+    }
+}
+
 /// What is there for an item before anything is computed.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub enum State {
@@ -76,7 +83,7 @@ pub enum Step<'a> {
         kept: usize,
         /// Estimated seconds on one core.
         seconds: f64,
-        /// Worker threads.
+        /// Threads that can run at once.
         threads: usize,
     },
     /// A family is taken up.
@@ -190,7 +197,7 @@ pub fn run(
         families: todo.len(),
         kept: items.len() - todo.len(),
         seconds: todo.iter().map(|&index| items[index].cost.seconds).sum(),
-        threads: settings.threads,
+        threads: settings.workers(),
     });
     if todo.is_empty() {
         return Ok(summary(outcomes, false, None));

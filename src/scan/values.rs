@@ -116,6 +116,9 @@ pub fn parse_size(text: &str) -> Result<u64> {
 
 /// A size for people: "1.5 GB" (powers of 1024, as in [`parse_size`]).
 pub fn show_size(bytes: u64) -> String {
+    if bytes > 1000 << 40 {
+        return "over 1000 TB".to_string();
+    }
     let units = [(1u64 << 40, "TB"), (1 << 30, "GB"), (1 << 20, "MB"), (1 << 10, "KB")];
     for (scale, unit) in units {
         if bytes >= scale {
@@ -130,6 +133,7 @@ pub fn show_size(bytes: u64) -> String {
 pub fn show_time(seconds: f64) -> String {
     let whole = seconds.round().clamp(0.0, 1e15) as u64;
     match whole {
+        _ if seconds > 3e10 => "over 1000 years".to_string(),
         _ if seconds < 0.095 => "under 0.1 s".to_string(),
         _ if seconds < 9.95 => format!("{seconds:.1} s"),
         0..120 => format!("{whole} s"),
@@ -171,6 +175,7 @@ mod tests {
             (240.0, "4 min"),
             (7800.0, "2 h 10 min"),
             (273_600.0, "3 d 4 h"),
+            (1e12, "over 1000 years"),
         ] {
             assert_eq!(show_time(seconds), text);
         }
