@@ -17,3 +17,4 @@ pub mod record;
 pub mod report;
 pub mod scan;
 pub mod spectral_curve;
+pub mod state;

@@ -239,7 +239,7 @@ fn completions_manual_and_help() {
     text(&program(&["manual", "--out", directory.path().to_str().unwrap()]));
     let pages: Vec<String> =
         std::fs::read_dir(&directory).unwrap().map(|entry| entry.unwrap().file_name().into_string().unwrap()).collect();
-    for command in ["series", "evaluate", "export", "plot", "completions", "manual"] {
+    for command in ["series", "evaluate", "export", "plot", "state", "completions", "manual"] {
         assert!(pages.contains(&format!("loopladder-{command}.1")), "{pages:?}");
         let help = text(&program(&[command, "--help"]));
         assert!(help.contains("Example"), "{help}");
@@ -251,7 +251,8 @@ fn completions_manual_and_help() {
 fn mistakes() {
     let record = plan().join("L08M04.json");
     let record = record.to_str().unwrap();
-    let cases: [(&[&str], i32, &str); 9] = [
+    let cases: [(&[&str], i32, &str); 10] = [
+        (&["state", "6", "3", "L6M3-2"], 2, "its orbits are"),
         (&["evaluate", "4", "2", "--at", "0.1"], 2, "equals sign"),
         (&["evaluate", "4", "2", "--at", "g=0.1", "--loops", "9"], 2, "loops"),
         (&["evaluate", "--at", "g=0.1"], 2, "required"),

@@ -375,6 +375,11 @@ impl Pending {
     }
 }
 
+/// A cyclic highest-weight state with integer entries and a part in every primary: the start of the spectrum.
+pub fn start(necklaces: &Necklaces) -> Vec<i128> {
+    highest_weight_state(necklaces, &mut Random(0x9e37_79b9_7f4a_7c15))
+}
+
 /// A cyclic highest-weight state with integer entries: valence bonds (M singlet pairs of sites, the
 /// rest unexcited) in random places, summed over all shifts.
 fn highest_weight_state(necklaces: &Necklaces, random: &mut Random) -> Vec<i128> {

@@ -14,6 +14,7 @@ mod progress;
 mod reading;
 mod scan;
 mod series;
+mod state;
 
 use crate::error::{Error, Result};
 use clap::{CommandFactory as _, FromArgMatches as _, Parser, Subcommand};
@@ -41,6 +42,7 @@ enum Command {
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
     Plot(plot::Arguments),
+    State(state::Arguments),
     Completions(completions::Arguments),
     Manual(manual::Arguments),
 }
@@ -76,6 +78,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
         Command::Evaluate(arguments) => evaluate::run(arguments, &console),
         Command::Export(arguments) => export::run(arguments, &console),
         Command::Plot(arguments) => plot::run(arguments, &console),
+        Command::State(arguments) => state::run(&arguments, &console),
         Command::Completions(arguments) => completions::run(arguments, &console),
         Command::Manual(arguments) => manual::run(arguments, &console),
     }
