@@ -388,6 +388,7 @@ fn part_hint(entry: &Entry, difference: &Value, computed: &Value) -> Option<Stri
 mod tests {
     use crate::compare::{Reference, Verdict, run};
     use crate::record::Record;
+    use proptest::prelude::*;
 
     /// (4, 2): FSSZ arXiv:0712.3522, wrapping part BJ arXiv:0807.0399; (8, 4): γ₁ and γ₂ of the cubic
     /// orbit, BO JHEP 09 (2006) 016 in exact form.
@@ -488,5 +489,42 @@ mod tests {
         assert!(
             matches!(konishi("label = \"L4M2-2\"\nloop = 1\nvalue = \"12\""), Verdict::Missing(reason) if reason.contains("no state"))
         );
+    }
+
+    #[test]
+    fn the_protected_state_has_zeros() {
+        let text = r#"{"schema":1,"program":"test","length":3,"magnons":0,"coupling":"g^2 = lambda/(16 pi^2)","loops":1,
+            "primaries":1,"orbits":[{"label":"L3M0-1","parity":"symmetric","members":1,"singular":false,
+            "minimal_polynomial":["0","1"],"generator":"gamma_1","coefficients":[
+            {"loop":1,"status":"exact","terms":[{"zeta":[],"value":["0"]}]}],"states":[{"omega":"0","one_loop":"0.000"}]}]}"#;
+        let record = Record::from_json(text, "test").unwrap();
+        let verdict = |value: &str| {
+            let entry = format!(
+                "coupling = \"lambda/pi^2\"\n[[entry]]\nfamily = [3, 0]\none_loop = \"0\"\nloop = 1\nvalue = \"{value}\""
+            );
+            run(&[&record], Reference::from_toml(&entry, "test").unwrap()).unwrap().answers.remove(0).verdict
+        };
+        assert_eq!(verdict("0"), Verdict::Exact);
+        assert_eq!(verdict("0.0"), Verdict::Digits);
+        assert!(matches!(verdict("1"), Verdict::Differs(_)));
+    }
+
+    proptest! {
+        #![proptest_config(ProptestConfig::with_cases(300))]
+        /// Whatever the value and the selector say, there is an answer or an error.
+        #[test]
+        fn any_words_of_the_language_get_an_answer(
+            value in "[0-9w(z3)+*/ .-]{0,24}",
+            one_loop in "(12|1[0-9]\\.9044|w|sqrt\\([0-9]\\)|[0-9]{1,3}/[0-9])",
+            family in "(\\[4, 2\\]|\\[8, 4\\])",
+            part in "(complete|asymptotic|finite-size|zeta-free)",
+        ) {
+            let text = format!("coupling = \"lambda/(16 pi^2)\"\n[[entry]]\nfamily = {family}\nloop = 2\none_loop = \"{one_loop}\"\npart = \"{part}\"\nvalue = \"{value}\"");
+            let records = records();
+            let records: Vec<&Record> = records.iter().collect();
+            if let Ok(reference) = Reference::from_toml(&text, "fuzz") {
+                let _ = run(&records, reference);
+            }
+        }
     }
 }

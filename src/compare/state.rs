@@ -101,7 +101,7 @@ impl<'a> Scaled<'a> {
             && !coefficient.terms.is_empty()
         {
             let mut value = self.convert(&coefficient.terms, 1).ok()?;
-            return value.remove(&Vec::new());
+            return Some(value.remove(&Vec::new()).unwrap_or_else(|| vec![BigRational::zero(); self.orbit.degree()]));
         }
         (self.orbit.generator == "gamma_1").then(|| self.field(None).omega())
     }

@@ -13,8 +13,8 @@ import chain
 import record
 
 program = sys.argv[1]
-mp.mp.dps = 30
-TERMS = 26
+mp.mp.dps = 24
+TERMS = 20
 
 
 def integrand(length, roots, a, u):
