@@ -14,6 +14,8 @@ pub struct Cost {
     pub seconds: f64,
     /// Bytes of memory with one prime at a time.
     pub bytes: u64,
+    /// Bytes for each further prime at the same time.
+    pub further: u64,
 }
 
 /// Memory of the program itself, the spectrum and the reconstruction.
@@ -26,7 +28,7 @@ const BASE: u64 = 30 << 20;
 /// above 1 s agree within a factor 1.7.
 pub fn cost(family: Family, loops: usize) -> Cost {
     if family.is_protected() {
-        return Cost { seconds: 1e-3, bytes: BASE };
+        return Cost { seconds: 1e-3, bytes: BASE, further: 0 };
     }
     let primaries = family.primaries().to_f64();
     let symmetric = symmetric_primaries(family).min(primaries);
@@ -34,8 +36,8 @@ pub fn cost(family: Family, loops: usize) -> Cost {
     let entries = entries(loops.clamp(1, family.length) - 1);
     let last = if loops >= family.length { 2.6 } else { 1.0 };
     let seconds = 5.9e-6 * entries.powf(0.74) * last * (symmetric.powf(3.1) + (0.8 * paired).powf(3.1));
-    let bytes = BASE as f64 + prime_bytes(entries, family.length as f64, symmetric.max(paired));
-    Cost { seconds: 2e-3 + seconds, bytes: bytes.min(1e18) as u64 }
+    let further = prime_bytes(entries, family.length as f64, symmetric.max(paired)).min(1e18) as u64;
+    Cost { seconds: 2e-3 + seconds, bytes: BASE + further, further }
 }
 
 /// The number of primaries that are symmetric under v → −v: the trace of parity on the primaries, that

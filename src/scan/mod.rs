@@ -6,6 +6,7 @@
 
 mod calculator;
 mod engine;
+mod item;
 mod journal;
 mod lock;
 mod place;
@@ -24,7 +25,8 @@ pub use calculator::{Calculator, Job, OrbitOutline, Product};
 pub use engine::Engine;
 pub use journal::Journal;
 pub use plan::{Filter, Plan, Task};
-pub use run::{Item, Settings, State, Step, Watcher, prepare, run, survey};
+pub use item::{Item, Settings, State, prepare, survey};
+pub use run::{Step, Watcher, run};
 pub use shard::{Shard, assign};
 pub use store::{Found, Store, certificate_path};
 pub use summary::{Outcome, Summary};

@@ -6,19 +6,16 @@
 //! of this.
 
 use super::calculator::Calculator;
+use super::item::{Item, Settings};
 use super::lock::{self, Attempt};
-use super::plan::{Plan, Task};
 use super::resources::{Budget, Presence};
-use super::shard::{Shard, assign};
 use super::store::{Found, Store, is_storage_failure};
 use super::summary::{Outcome, Summary};
 use super::work::{Progress, complete_family};
-use crate::engine::Cost;
 use crate::error::{Error, Kind, Result};
 use crate::family::Family;
 use crate::observer::{Event, Observer};
 use std::collections::VecDeque;
-use std::path::PathBuf;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{RecvTimeoutError, Sender, channel};
 use std::sync::{Arc, Mutex, PoisonError};
@@ -29,48 +26,6 @@ const LONG: f64 = 5.0;
 /// How long after a request to stop families may still end by themselves; then the scan ends without them.
 const GRACE: Duration = Duration::from_millis(1300);
 const POLL: Duration = Duration::from_millis(100);
-
-/// One family to be computed.
-#[derive(Clone, Debug)]
-pub struct Item {
-    /// What the plan says.
-    pub task: Task,
-    /// Through this loop order.
-    pub loops: usize,
-    /// The estimate.
-    pub cost: Cost,
-}
-
-/// How a plan is run.
-#[derive(Clone, Debug)]
-pub struct Settings {
-    /// Where the records are.
-    pub directory: PathBuf,
-    /// Worker threads, at least 1.
-    pub threads: usize,
-    /// Memory bound in bytes.
-    pub memory: Option<u64>,
-    /// Whether certificates are wanted.
-    pub certificates: bool,
-}
-
-impl Settings {
-    /// How many threads can really run at once: for estimates.
-    pub fn workers(&self) -> usize {
-        std::thread::available_parallelism().map_or(self.threads, |cores| self.threads.min(cores.get())).max(1)
-    }
-}
-
-/// What is there for an item before anything is computed.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub enum State {
-    /// The complete record.
-    Complete,
-    /// Nothing, or less than asked for.
-    ToCompute,
-    /// A damaged file, which a run would move aside.
-    Damaged(PathBuf),
-}
 
 /// What a scan reports beyond what families report themselves.
 #[derive(Debug)]
@@ -110,48 +65,6 @@ pub enum Step<'a> {
 pub trait Watcher: Observer + Send {
     /// Something happened.
     fn step(&self, step: Step<'_>);
-}
-
-/// The items of a plan, or of one shard of it, in the plan's order.
-pub fn prepare(plan: &Plan, calculator: &dyn Calculator, shard: Option<Shard>) -> Vec<Item> {
-    let items: Vec<Item> = plan
-        .tasks
-        .iter()
-        .map(|task| {
-            let complete = calculator.complete_through(task.family);
-            let loops = task.limit.map_or(complete, |limit| limit.min(complete));
-            Item { task: task.clone(), loops, cost: calculator.cost(task.family, loops) }
-        })
-        .collect();
-    let Some(shard) = shard else { return items };
-    let seconds: Vec<f64> = items.iter().map(|item| item.cost.seconds).collect();
-    let shards = assign(&seconds, shard.count);
-    items.into_iter().zip(shards).filter(|(_, place)| *place == shard.index).map(|(item, _)| item).collect()
-}
-
-/// What is there for every item.
-///
-/// # Errors
-/// A file exists and cannot be read.
-pub fn survey(items: &[Item], settings: &Settings) -> Result<Vec<State>> {
-    let store = Store::new(&settings.directory);
-    items
-        .iter()
-        .map(|item| {
-            Ok(
-                match store.examine(
-                    item.task.family,
-                    None,
-                    item.loops,
-                    settings.certificates && !item.task.family.is_protected(),
-                )? {
-                    Found::Complete => State::Complete,
-                    Found::Missing | Found::Short(_) => State::ToCompute,
-                    Found::Damaged { path, .. } => State::Damaged(path),
-                },
-            )
-        })
-        .collect()
 }
 
 /// Computes what the results directory does not hold yet.
@@ -307,50 +220,49 @@ impl Crew {
     }
 
     fn one_by_one(&self, items: Vec<usize>, results: &Results, put_off: &Mutex<Vec<usize>>) {
-        if items.is_empty() {
-            return;
-        }
-        let pool = match pool(self.settings.threads) {
-            Ok(pool) => pool,
-            Err(error) => return self.all_fail(items, &error, results),
-        };
         for index in items {
             if self.over() {
                 return;
             }
-            self.one(index, &pool, results, put_off);
+            self.one(index, self.settings.threads, results, put_off);
         }
     }
 
+    /// As many threads as there is memory for primes: a thread that only waits for its turn would still
+    /// hold on to memory that it once used.
+    fn threads_for(&self, item: &Item, most: usize) -> usize {
+        let Some(limit) = self.settings.memory else { return most };
+        let further = limit.saturating_sub(item.cost.bytes) / item.cost.further.max(1);
+        let threads = most.min(usize::try_from(further).unwrap_or(usize::MAX).saturating_add(1));
+        if threads < most {
+            let plural = if threads == 1 { "thread" } else { "threads" };
+            let text = format!("{}: the memory bound leaves {threads} {plural}", item.task.family);
+            self.watcher.event(Event::Remark { text });
+        }
+        threads
+    }
+
     fn side_by_side(&self, items: Vec<usize>, results: &Results, put_off: &Mutex<Vec<usize>>) {
-        let threads = self.settings.threads.min(items.len());
+        let least = items.iter().map(|&index| self.items[index].cost.bytes).min().unwrap_or(0).max(1);
+        let fit = self.settings.memory.map_or(usize::MAX, |limit| usize::try_from(limit / least).unwrap_or(usize::MAX));
+        let threads = self.settings.threads.min(items.len()).min(fit.max(1));
         let queue = Mutex::new(VecDeque::from(items));
         let take = || queue.lock().unwrap_or_else(PoisonError::into_inner).pop_front();
         std::thread::scope(|scope| {
             for _ in 0..threads {
                 scope.spawn(|| {
-                    let pool = pool(1);
                     while !self.over()
                         && let Some(index) = take()
                     {
-                        match &pool {
-                            Ok(pool) => self.one(index, pool, results, put_off),
-                            Err(error) => self.all_fail(vec![index], error, results),
-                        }
+                        self.one(index, 1, results, put_off);
                     }
                 });
             }
         });
     }
 
-    fn all_fail(&self, items: Vec<usize>, error: &Error, results: &Results) {
-        for index in items {
-            let _ = results.send((index, Outcome::Failed(Error::new(error.kind(), error.chain()))));
-        }
-    }
-
     /// Computes one item, or puts it off when another scan has it.
-    fn one(&self, index: usize, pool: &rayon::ThreadPool, results: &Results, put_off: &Mutex<Vec<usize>>) {
+    fn one(&self, index: usize, threads: usize, results: &Results, put_off: &Mutex<Vec<usize>>) {
         let item = &self.items[index];
         let family = item.task.family;
         let begin = Instant::now();
@@ -369,13 +281,14 @@ impl Crew {
         self.running.lock().unwrap_or_else(PoisonError::into_inner).push(index);
         let report = |units| self.watcher.step(Step::Started { family, loops: item.loops, units });
         let result = self.budget.take(family, item.cost.bytes, &*self.watcher).and_then(|_share| {
+            let pool = pool(self.threads_for(item, threads))?;
             complete_family(&super::work::Order {
                 item,
                 settings: &self.settings,
                 store: &self.store,
                 calculator: &*self.calculator,
                 observer: &*self.watcher,
-                pool,
+                pool: &pool,
                 started: &report,
             })
         });

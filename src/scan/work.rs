@@ -1,8 +1,8 @@
 //! One family: look, compute, check, store.
 
 use super::calculator::{Calculator, Job};
+use super::item::{Item, Settings};
 use super::journal::Journal;
-use super::run::{Item, Settings};
 use super::store::{Found, Store};
 use crate::error::{Error, Result};
 use crate::observer::{Event, Observer};

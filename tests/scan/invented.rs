@@ -116,7 +116,7 @@ impl Calculator for Invented {
 
     fn cost(&self, family: Family, _loops: usize) -> Cost {
         let seconds = outlines(family).len() as f64 * self.units as f64 * self.pause.as_secs_f64();
-        Cost { seconds, bytes: self.bytes }
+        Cost { seconds, bytes: self.bytes, further: self.bytes }
     }
 
     fn orbits(&self, family: Family, _observer: &dyn Observer) -> Result<Vec<OrbitOutline>> {
