@@ -254,7 +254,7 @@ fn mistakes() {
     let cases: [(&[&str], i32, &str); 10] = [
         (&["state", "6", "3", "L6M3-2"], 2, "its orbits are"),
         (&["evaluate", "4", "2", "--at", "0.1"], 2, "equals sign"),
-        (&["evaluate", "4", "2", "--at", "g=0.1", "--loops", "9"], 2, "loops"),
+        (&["evaluate", "4", "2", "--at", "g=0.1", "--loops", "999"], 2, "loops"),
         (&["evaluate", "--at", "g=0.1"], 2, "required"),
         (&["evaluate", "--from", "/nonexistent.json", "--at", "g=0.1"], 6, "cannot read"),
         (&["export", record, "--format", "json", "--coupling", "lambda"], 2, "csv"),
