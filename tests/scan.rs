@@ -34,7 +34,7 @@ fn scan_with(
     watch: &Arc<Watch>,
 ) -> Summary {
     let plan = Plan::parse(plan, "plan.toml").unwrap();
-    let items = prepare(&plan, &**calculator, shard);
+    let items = prepare(&plan, &**calculator, settings.certificates, shard);
     run(items, settings, Arc::clone(calculator) as _, Arc::clone(watch) as _).unwrap()
 }
 
@@ -354,7 +354,7 @@ fn a_read_only_directory_is_refused_and_complete_ones_are_still_read() {
     let before = contents(disk.path());
     remount(&disk, "ro");
     let calculator = Arc::new(Invented::new(3, MILLISECOND));
-    let items = prepare(&Plan::parse(SMALL, "plan.toml").unwrap(), &*calculator, None);
+    let items = prepare(&Plan::parse(SMALL, "plan.toml").unwrap(), &*calculator, false, None);
     let error =
         run(items, &settings(disk.path(), 2), Arc::clone(&calculator) as _, Arc::new(Watch::default())).unwrap_err();
     assert_eq!(error.exit_code(), 6);
@@ -373,7 +373,7 @@ fn a_survey_changes_nothing() {
     let directory = tempfile::tempdir().unwrap();
     let plan = Plan::parse(SMALL, "plan.toml").unwrap();
     let calculator = Invented::new(3, MILLISECOND);
-    let items = prepare(&plan, &calculator, None);
+    let items = prepare(&plan, &calculator, false, None);
     let missing = directory.path().join("not/there");
     assert!(survey(&items, &settings(&missing, 1)).unwrap().iter().all(|state| *state == State::ToCompute));
     assert!(!missing.exists());

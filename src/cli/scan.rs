@@ -65,9 +65,9 @@ fn run_with(arguments: &Arguments, console: &Console, calculator: Arc<dyn Calcul
     let plan = Plan::read(&arguments.plan)?;
     let shard = arguments.shard.as_deref().map(str::parse::<Shard>).transpose()?;
     let settings = settings(arguments, &plan)?;
-    let items = prepare(&plan, &*calculator, shard);
+    let items = prepare(&plan, &*calculator, settings.certificates, shard);
     if arguments.dry_run {
-        let whole = prepare(&plan, &*calculator, None);
+        let whole = prepare(&plan, &*calculator, settings.certificates, None);
         return console.result(&preview(arguments, &settings, &items, &whole, shard)?);
     }
     interrupt::listen(Duration::from_secs(5))?;

@@ -44,7 +44,7 @@ pub trait Calculator: Send + Sync {
     fn complete_through(&self, family: Family) -> usize;
 
     /// An estimate of what a family costs. Must be the same on every machine: shards rely on it.
-    fn cost(&self, family: Family, loops: usize) -> Cost;
+    fn cost(&self, family: Family, loops: usize, certificate: bool) -> Cost;
 
     /// The orbits of a family, without their coefficients.
     ///

@@ -51,14 +51,14 @@ pub enum State {
 }
 
 /// The items of a plan, or of one shard of it, in the plan's order.
-pub fn prepare(plan: &Plan, calculator: &dyn Calculator, shard: Option<Shard>) -> Vec<Item> {
+pub fn prepare(plan: &Plan, calculator: &dyn Calculator, certificates: bool, shard: Option<Shard>) -> Vec<Item> {
     let items: Vec<Item> = plan
         .tasks
         .iter()
         .map(|task| {
             let complete = calculator.complete_through(task.family);
             let loops = task.limit.map_or(complete, |limit| limit.min(complete));
-            Item { task: task.clone(), loops, cost: calculator.cost(task.family, loops) }
+            Item { task: task.clone(), loops, cost: calculator.cost(task.family, loops, certificates) }
         })
         .collect();
     let Some(shard) = shard else { return items };

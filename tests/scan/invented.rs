@@ -114,7 +114,7 @@ impl Calculator for Invented {
         family.length - 1
     }
 
-    fn cost(&self, family: Family, _loops: usize) -> Cost {
+    fn cost(&self, family: Family, _loops: usize, _certificate: bool) -> Cost {
         let seconds = outlines(family).len() as f64 * self.units as f64 * self.pause.as_secs_f64();
         Cost { seconds, bytes: self.bytes, further: self.bytes }
     }
