@@ -6,7 +6,7 @@ use crate::error::{Error, Kind, Result};
 use crate::record;
 use std::path::PathBuf;
 
-/// Compares records with published (or draft) values, exactly
+/// Compare results with published (or draft) values, exactly
 #[derive(clap::Args)]
 #[command(after_help = "\
 A reference file is TOML with one [[entry]] for each value:

@@ -26,7 +26,7 @@ pub fn plain(comparison: &Comparison, colour: bool) -> String {
         for run in group.chunk_by(|a, b| a.1.verdict == b.1.verdict) {
             let (first, last) = (run[0].0.order, run[run.len() - 1].0.order);
             let loops = if first == last { format!("loop {first}") } else { format!("loops {first} to {last}") };
-            out.push_str(&format!("  {loops:<13} {}\n", verdict_word(&run[0].1.verdict, colour)));
+            out.push_str(&format!("  {loops:<13} {}\n", verdict_word(&run[0].1.verdict, run.len() > 1, colour)));
             details(&mut out, run[0].0, run[0].1);
         }
     }
@@ -42,9 +42,11 @@ pub fn plain(comparison: &Comparison, colour: bool) -> String {
     out
 }
 
-fn verdict_word(verdict: &Verdict, colour: bool) -> String {
+fn verdict_word(verdict: &Verdict, several: bool, colour: bool) -> String {
     let (word, code) = match verdict {
+        Verdict::Exact if several => ("agree exactly", "32"),
         Verdict::Exact => ("agrees exactly", "32"),
+        Verdict::Digits if several => ("agree to the printed digits", "32"),
         Verdict::Digits => ("agrees to the printed digits", "32"),
         Verdict::Differs(_) => ("DIFFERS", "31"),
         Verdict::Missing(_) => ("not in the results", "33"),
