@@ -56,9 +56,11 @@ struct Statement {
 }
 
 fn reference(length: usize, magnons: usize) -> Reference {
-    let path = PathBuf::from(env!("CARGO_MANIFEST_DIR")).join(format!("tests/reference/L{length:02}M{magnons:02}.json"));
+    let path =
+        PathBuf::from(env!("CARGO_MANIFEST_DIR")).join(format!("tests/reference/L{length:02}M{magnons:02}.json"));
     let text = std::fs::read_to_string(&path).unwrap_or_else(|cause| panic!("{}: {cause}", path.display()));
-    let reference: Reference = serde_json::from_str(&text).unwrap_or_else(|cause| panic!("{}: {cause}", path.display()));
+    let reference: Reference =
+        serde_json::from_str(&text).unwrap_or_else(|cause| panic!("{}: {cause}", path.display()));
     assert_eq!((reference.length, reference.magnons), (length, magnons));
     reference
 }
