@@ -184,35 +184,29 @@ struct Found {
     correction: Option<(usize, Vec<Rational>)>,
 }
 
-/// Newton polygon of χ(x₀ + y, h).
+/// Newton polygon of χ(x₀ + y, h): first the expansion at x = γ₁, whose coefficients are small, then the shift
+/// by hγ₂ + h²γ₃, for which the terms through y^{k + H} suffice.
 fn found(chi: &Polynomial, claim: &Claim) -> Found {
+    let field = &claim.field;
     let order = chi[0].len() - 1;
+    let terms = (order / 2 + order + 1).min(chi.len());
+    let one_loop = field.element(&claim.values[0]);
+    let columns: Vec<Vec<Vec<Rational>>> = (0..=order)
+        .map(|j| {
+            let column = chi.iter().map(|c| field.constant(&Rational::from(&c[j]))).collect();
+            expansion(field, column, &one_loop, terms)
+        })
+        .collect();
+    let expanded = (0..terms).map(|i| columns.iter().map(|column| column[i].clone()).collect()).collect();
     let grading = Grading::plain(order);
-    let ring = Graded::new(&claim.field, &grading);
-    let mut point = ring.zero();
-    for (slot, value) in point.iter_mut().zip(&claim.values) {
-        *slot = claim.field.element(value);
+    let ring = Graded::new(field, &grading);
+    let mut step = ring.zero();
+    for (slot, value) in step.iter_mut().zip(&claim.values).skip(1) {
+        *slot = field.element(value);
     }
-    let lifted = |c: &Integer| claim.field.constant(&Rational::from(c));
-    let mut polynomial: Vec<Vec<Vec<Rational>>> = chi.iter().map(|c| c.iter().map(lifted).collect()).collect();
-    // c_i(h) of χ(x₀ + y) = Σ c_i y^i by repeated synthetic division, up to the first unit.
-    let mut coefficients = Vec::new();
-    loop {
-        let mut remainder = ring.zero();
-        let mut quotient = Vec::with_capacity(polynomial.len());
-        for c in polynomial.iter().rev() {
-            quotient.push(remainder.clone());
-            remainder = ring.add(&ring.mul(&remainder, &point), c);
-        }
-        quotient.reverse();
-        quotient.pop();
-        let unit = ring.valuation(&remainder) == 0;
-        coefficients.push(remainder);
-        if unit || quotient.is_empty() {
-            break;
-        }
-        polynomial = quotient;
-    }
+    let mut coefficients = expansion(&ring, expanded, &step, order / 2 + 1);
+    let unit = coefficients.iter().position(|c| ring.valuation(c) == 0);
+    coefficients.truncate(unit.map_or(coefficients.len(), |k| k + 1));
     let valuations: Vec<usize> = coefficients.iter().map(|c| ring.valuation(c)).collect();
     let agreeing: Vec<usize> = (1..=claim.values.len())
         .map(|slope| {
@@ -225,12 +219,27 @@ fn found(chi: &Polynomial, claim: &Claim) -> Found {
         .collect();
     let mut correction = None;
     if valuations.len() == 2 && (1..claim.values.len()).contains(&valuations[0]) {
-        if let Some(inverse) = claim.field.inverse(&coefficients[1][0]) {
-            let step = claim.field.neg(&claim.field.mul(&coefficients[0][valuations[0]], &inverse));
-            correction = Some((valuations[0] + 1, claim.field.coefficients(&step)));
+        if let Some(inverse) = field.inverse(&coefficients[1][0]) {
+            let step = field.neg(&field.mul(&coefficients[0][valuations[0]], &inverse));
+            correction = Some((valuations[0] + 1, field.coefficients(&step)));
         }
     }
     Found { agreeing, correction }
+}
+
+/// The first `count` coefficients of p(x₀ + y) in y, by repeated synthetic division.
+fn expansion<R: Ring>(ring: &R, mut polynomial: Vec<R::Elem>, point: &R::Elem, count: usize) -> Vec<R::Elem> {
+    let mut coefficients = Vec::with_capacity(count);
+    while coefficients.len() < count && !polynomial.is_empty() {
+        let mut remainder = ring.zero();
+        for slot in polynomial.iter_mut().rev() {
+            let next = ring.add(&ring.mul(&remainder, point), slot);
+            *slot = std::mem::replace(&mut remainder, next);
+        }
+        coefficients.push(remainder);
+        polynomial.pop();
+    }
+    coefficients
 }
 
 fn judge(orbit: &Orbit, claim: &Claim, claims: &[Claim], loops: usize, found: &[Found]) -> OrbitReport {
