@@ -7,6 +7,7 @@ pub mod baxter;
 pub mod chain;
 pub mod cli;
 pub mod compare;
+pub mod crosscheck;
 pub mod engine;
 pub mod error;
 pub mod family;

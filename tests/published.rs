@@ -26,11 +26,8 @@ fn record(length: usize, magnons: usize, loops: usize) -> Record {
 }
 
 fn orbit<'a>(record: &'a Record, minimal: &[&str], parity: Parity) -> &'a Orbit {
-    let found: Vec<&Orbit> = record
-        .orbits
-        .iter()
-        .filter(|orbit| orbit.minimal_polynomial == *minimal && orbit.parity == parity)
-        .collect();
+    let found: Vec<&Orbit> =
+        record.orbits.iter().filter(|orbit| orbit.minimal_polynomial == *minimal && orbit.parity == parity).collect();
     assert_eq!(found.len(), 1, "one orbit with minimal polynomial {minimal:?}");
     found[0]
 }
@@ -211,9 +208,10 @@ fn two_magnons_through_length_twenty() {
         }
         // The states: P(8 − 8x)² (x − 1) (x + 1 when L is odd) ∝ T_{L−1}(x) − 1.
         let substitution = [Rational::from(8), Rational::from(-8)];
-        let in_x = all.iter().rev().fold(Vec::new(), |value, c| {
-            poly::add(&q, &poly::mul(&q, &value, &substitution), std::slice::from_ref(c))
-        });
+        let in_x = all
+            .iter()
+            .rev()
+            .fold(Vec::new(), |value, c| poly::add(&q, &poly::mul(&q, &value, &substitution), std::slice::from_ref(c)));
         let mut product = poly::mul(&q, &poly::mul(&q, &in_x, &in_x), &[Rational::from(-1), Rational::from(1)]);
         if length % 2 == 1 {
             product = poly::mul(&q, &product, &[Rational::from(1), Rational::from(1)]);

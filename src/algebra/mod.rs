@@ -11,3 +11,6 @@ pub mod quotient;
 pub mod rationals;
 pub mod reconstruct;
 pub mod ring;
+
+#[cfg(test)]
+mod tests;

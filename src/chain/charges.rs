@@ -17,13 +17,13 @@ pub struct Sparse {
 }
 
 /// A product of site exchanges, applied from the last to the first, with its weight.
-type Word = (i64, Vec<(usize, usize)>);
+pub(crate) type Word = (i64, Vec<(usize, usize)>);
 
 impl Sparse {
     /// The matrix of Σ weight · word on cyclic states.
     ///
     /// (Aψ)(c) = Σ weight · ψ(word⁻¹ c), so a row follows each word's exchanges in the order written.
-    fn new(necklaces: &Necklaces, words: &[Word]) -> Sparse {
+    pub(crate) fn new(necklaces: &Necklaces, words: &[Word]) -> Sparse {
         let rows = necklaces
             .representatives()
             .iter()

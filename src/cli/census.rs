@@ -39,7 +39,8 @@ pub fn run(arguments: &Arguments, console: &Console) -> Result<()> {
     for length in first..=last {
         for magnons in (2..=length / 2).filter(|m| arguments.magnons.is_none_or(|only| only == *m)) {
             let family = Family::new(length, magnons)?;
-            let mut text = format!("{family}  {} primaries\n", family.primaries());
+            let count = family.primaries();
+            let mut text = format!("{family}  {count} {}\n", if count == 1 { "primary" } else { "primaries" });
             if !arguments.counts {
                 for orbit in in_pool(arguments.threads, || engine::outline(family, &progress))? {
                     describe(&orbit, &mut text);

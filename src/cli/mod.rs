@@ -5,6 +5,7 @@ mod census;
 mod compare;
 mod completions;
 mod console;
+mod crosscheck;
 mod evaluate;
 mod export;
 pub mod interrupt;
@@ -39,6 +40,7 @@ enum Command {
     Scan(scan::Arguments),
     Audit(audit::Arguments),
     Compare(compare::Arguments),
+    Crosscheck(crosscheck::Arguments),
     Evaluate(evaluate::Arguments),
     Export(export::Arguments),
     Plot(plot::Arguments),
@@ -75,6 +77,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> Result<()> {
         Command::Scan(arguments) => scan::run(arguments, &console),
         Command::Audit(arguments) => audit::run(arguments, &console),
         Command::Compare(arguments) => compare::run(arguments, &console),
+        Command::Crosscheck(arguments) => crosscheck::run(arguments, &console),
         Command::Evaluate(arguments) => evaluate::run(arguments, &console),
         Command::Export(arguments) => export::run(arguments, &console),
         Command::Plot(arguments) => plot::run(arguments, &console),

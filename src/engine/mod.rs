@@ -11,6 +11,8 @@ mod cost;
 mod image;
 mod orbit;
 mod states;
+#[cfg(test)]
+mod tests;
 
 pub use checkpoint::{Checkpoint, NoCheckpoint};
 pub use cost::{Cost, cost};
