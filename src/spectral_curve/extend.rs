@@ -87,19 +87,40 @@ pub fn extend(request: &Request, stages: &Stages, observer: &dyn Observer) -> Re
     }
     let mut extension = Extension { coefficients: Vec::new(), consistency: f64::INFINITY, agreement: f64::INFINITY };
     for run in &runs {
-        let values = solve_all(request, run, stages, observer)?;
-        extension.consistency = extension.consistency.min(values.consistency);
-        extension.agreement = extension.agreement.min(agreement(request, &values, exact)?);
-        for order in run.first..=run.last {
-            observer.proceed()?;
-            let recognised = if run.recognise { recognise(request, &values, order) } else { None };
-            extension.coefficients.push(match recognised {
-                Some(coefficient) => coefficient,
-                None => numeric(&values, order),
-            });
+        let mut found = one_run(request, run, exact, stages, observer, &mut extension)?;
+        let missed = |found: &[Coefficient]| found.iter().any(|coefficient| coefficient.status == Status::Numeric);
+        if run.recognise && request.digits.is_none() && missed(&found) {
+            let again = Run { digits: run.digits * 3 / 2, ..run.clone() };
+            let cost = plan::cost(family, orbit.parity, orbit.degree(), &again);
+            if request.memory.is_none_or(|limit| cost.bytes <= limit) {
+                observer.event(Event::Remark {
+                    text: format!("orbit {}: not every order was recognised at {} digits; once more at {}", orbit.label, run.digits, again.digits),
+                });
+                let better = one_run(request, &again, exact, stages, observer, &mut extension)?;
+                for (old, new) in found.iter_mut().zip(better) {
+                    if old.status == Status::Numeric {
+                        *old = new;
+                    }
+                }
+            }
         }
+        extension.coefficients.extend(found);
     }
     Ok(extension)
+}
+
+/// One run: all states, the checks, and the coefficients of its orders.
+fn one_run(request: &Request, run: &Run, exact: usize, stages: &Stages, observer: &dyn Observer, extension: &mut Extension) -> Result<Vec<Coefficient>> {
+    let values = solve_all(request, run, stages, observer)?;
+    extension.consistency = extension.consistency.min(values.consistency);
+    extension.agreement = extension.agreement.min(agreement(request, &values, exact)?);
+    (run.first..=run.last)
+        .map(|order| {
+            observer.proceed()?;
+            let recognised = if run.recognise { recognise(request, &values, order) } else { None };
+            Ok(recognised.unwrap_or_else(|| numeric(&values, order)))
+        })
+        .collect()
 }
 
 fn solve_all(request: &Request, run: &Run, stages: &Stages, observer: &dyn Observer) -> Result<Values> {
@@ -205,7 +226,7 @@ fn error_of(value: &Float, certain: u32) -> Float {
 }
 
 fn recognise(request: &Request, values: &Values, order: usize) -> Option<Coefficient> {
-    let elements = basis(request.family.length, order)?;
+    let elements = basis(order);
     let gamma: Vec<Float> = values.gamma.iter().map(|list| list[order].clone()).collect();
     let errors: Vec<Float> = gamma.iter().map(|value| error_of(value, values.certain)).collect();
     let bits = gamma.first()?.prec();

@@ -29,8 +29,8 @@ const GUARD: f64 = 12.0;
 impl Frame {
     /// The frame for `orders` orders at about `digits` certain digits.
     ///
-    /// N and the number of terms K satisfy K log₁₀(2πe(N+½)/K) ≥ working digits + 15, the size of the
-    /// smallest term kept; N is a fixed multiple of the digits that balances the cost of the
+    /// N and the number of terms K satisfy K log₁₀(2πe(N+½)/K) ≥ working digits + 2, the size of the
+    /// smallest term kept (and L + orders more, for the powers of k that higher orders bring); N is a fixed multiple of the digits that balances the cost of the
     /// recursion, ∝ N, against that of the expansions, ∝ K².
     pub fn new(family: Family, symmetric: bool, orders: usize, digits: u32) -> Frame {
         let working = f64::from(digits) + orders as f64 + family.length as f64 / 2.0 + GUARD;
@@ -38,7 +38,7 @@ impl Frame {
         let step = if symmetric { 2 } else { 1 };
         let growth = 2.0 * std::f64::consts::PI * std::f64::consts::E * (points as f64 + 0.5);
         let mut terms = 10.0;
-        while terms * (growth / terms).log10() < working + 15.0 {
+        while terms * (growth / terms).log10() < working + 2.0 {
             terms += 1.0;
         }
         let power = (family.length as f64) * (points as f64).log10();
@@ -50,7 +50,7 @@ impl Frame {
             digits,
             bits: ((working + power) * std::f64::consts::LOG2_10).ceil() as i64 + 32,
             points,
-            terms: (terms as usize + 2 * family.length + 2 * orders).div_ceil(step as usize),
+            terms: (terms as usize + family.length + orders).div_ceil(step as usize),
         }
     }
 

@@ -3,6 +3,7 @@
 pub mod extend;
 pub mod frame;
 pub mod basis;
+mod columns;
 mod gluing;
 pub mod input;
 mod laurent;

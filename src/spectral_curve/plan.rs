@@ -14,6 +14,9 @@ const NUMERIC_DIGITS: u32 = 70;
 /// Digits beyond what the fit is expected to consume.
 const MARGIN: f64 = 50.0;
 
+/// Decimal digits by which the integers grow per order, at least.
+const SLOPE: f64 = 1.5;
+
 /// One run of the solver over all embeddings of an orbit.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Run {
@@ -45,7 +48,7 @@ pub fn runs(orbit: &Orbit, length: usize, first: usize, loops: usize, digits: Op
     let recognisable = last_with_basis(length, loops);
     let mut runs = Vec::new();
     if recognisable >= first {
-        let needed = digits.unwrap_or_else(|| needed_digits(orbit, length, recognisable));
+        let needed = digits.unwrap_or_else(|| needed_digits(orbit, recognisable));
         runs.push(Run { first, last: recognisable, digits: needed, recognise: true });
     }
     if loops > recognisable {
@@ -56,8 +59,8 @@ pub fn runs(orbit: &Orbit, length: usize, first: usize, loops: usize, digits: Op
 }
 
 /// The digits with which the coefficient at `order` can be expected to be recognised.
-fn needed_digits(orbit: &Orbit, length: usize, order: usize) -> u32 {
-    let size = basis(length, order).map_or(0, |elements| elements.len()) as f64 + 1.0;
+fn needed_digits(orbit: &Orbit, order: usize) -> u32 {
+    let size = basis(order).len() as f64 + 1.0;
     (size * (expected_height(orbit, order) + 0.31) + MARGIN).ceil() as u32
 }
 
@@ -71,9 +74,9 @@ fn expected_height(orbit: &Orbit, order: usize) -> f64 {
         .filter(|coefficient| !coefficient.terms.is_empty() && coefficient.order < order)
         .map(|coefficient| (coefficient.order, traces.height(&coefficient.terms.iter().map(values).collect::<Vec<_>>())))
         .collect();
-    let Some(&(last, height)) = known.last() else { return 2.0 + 1.3 * order as f64 };
-    let slope = known.first().filter(|(first, _)| *first < last).map_or(1.3, |(first, low)| (height - low) / (last - first) as f64);
-    height + (order - last) as f64 * slope.max(1.3) + 0.7
+    let Some(&(last, height)) = known.last() else { return 2.0 + SLOPE * order as f64 };
+    let slope = known.first().filter(|(first, _)| *first < last).map_or(SLOPE, |(first, low)| (height - low) / (last - first) as f64);
+    height + (order - last) as f64 * slope.max(SLOPE) + 1.0
 }
 
 /// The minimal polynomial of ω as rationals.
