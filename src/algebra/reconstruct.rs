@@ -12,6 +12,12 @@ use rug::{Integer, Rational};
 /// How many primes are kept for the check.
 pub const FRESH: usize = 2;
 
+/// Whether n/d has this residue: n ≡ residue·d, with d a unit.
+fn agrees(field: &PrimeField, candidate: &Rational, residue: u64) -> bool {
+    let denominator = field.image(candidate.denom());
+    denominator != 0 && field.image(candidate.numer()) == field.mul(&field.element(residue), &denominator)
+}
+
 /// A vector of numbers known modulo more and more primes.
 #[derive(Debug, Default)]
 pub struct Reconstruction {
@@ -38,15 +44,20 @@ impl Reconstruction {
 
     /// Tries to reconstruct as rationals what is still unknown; returns how many numbers remain unknown.
     pub fn attempt(&mut self) -> usize {
-        self.attempt_with(|residue, modulus| flint::reconstruct(residue, modulus))
+        self.attempt_with(|residue, modulus| {
+            // Most numbers come with small denominators (see the driver) and need half the primes then.
+            let bits = 16 + modulus.significant_bits() / 8;
+            let small = flint::reconstruct_small_denominator(residue, modulus, bits);
+            small.into_iter().chain(flint::reconstruct(residue, modulus)).collect()
+        })
     }
 
     /// As [`Reconstruction::attempt`] for integers, which need half as many primes.
     pub fn attempt_integers(&mut self) -> usize {
-        self.attempt_with(|residue, _| Some(Rational::from(residue)))
+        self.attempt_with(|residue, _| vec![Rational::from(residue)])
     }
 
-    fn attempt_with(&mut self, candidate: impl Fn(&Integer, &Integer) -> Option<Rational> + Sync) -> usize {
+    fn attempt_with(&mut self, candidates: impl Fn(&Integer, &Integer) -> Vec<Rational> + Sync) -> usize {
         let Some(used) = self.fields.len().checked_sub(FRESH).filter(|used| *used > 0) else {
             return self.values.len().max(1);
         };
@@ -60,8 +71,8 @@ impl Reconstruction {
             }
             let residues: Vec<u64> = images[..used].iter().map(|image| image[i]).collect();
             let residue = tree.combine(&residues);
-            *value = candidate(&residue, &modulus).filter(|candidate| {
-                (used..fields.len()).all(|k| fields[k].residue(fields[k].scalar(candidate)) == images[k][i])
+            *value = candidates(&residue, &modulus).into_iter().find(|candidate| {
+                (used..fields.len()).all(|k| agrees(&fields[k], candidate, images[k][i]))
             });
         });
         self.values.iter().filter(|value| value.is_none()).count()

@@ -1,6 +1,6 @@
 //! One orbit modulo one prime: everything the record needs, as residues.
 
-use super::Request;
+use super::{Request, denominator};
 use crate::algebra::graded::Grading;
 use crate::algebra::linear;
 use crate::algebra::poly;
@@ -22,7 +22,8 @@ pub struct Image {
     /// Whether ±½ are roots at one loop.
     pub singular: bool,
     /// Coefficients of 1, ω, … of γ_n, loop by loop and zeta product by zeta product; at loop L, where the
-    /// finite-size term is wanted, its constant and its ζ3, ζ5, … ζ(2L−3) follow.
+    /// finite-size term is wanted, its constant and its ζ3, ζ5, … ζ(2L−3) follow. All times the weight of
+    /// [`denominator::weights`].
     pub values: Vec<u64>,
     /// For the certificate: all coefficients of Q₁ and Q₂ in powers of x, entry by entry.
     pub pair: Vec<u64>,
@@ -71,8 +72,9 @@ fn over<R: Ring>(
         Err(error) => return Err(error.within(format!("orbit {}", orbit.label))),
     };
     let mut values = Vec::with_capacity(elements.len() * orbit.degree());
-    for element in &elements {
-        let in_x = coefficients(element);
+    let weights = denominator::weights(ring, orbit, &start.omega, request.loops);
+    for (element, order) in elements.iter().zip(denominator::orders(request, grading)) {
+        let in_x = coefficients(&ring.mul(element, &weights[order]));
         let in_omega = match &subfield {
             None => in_x,
             Some(subfield) => match subfield.express(field, &in_x) {

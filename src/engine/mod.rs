@@ -8,6 +8,7 @@ mod assemble;
 mod beyond;
 mod checkpoint;
 mod cost;
+mod denominator;
 mod image;
 mod orbit;
 mod states;

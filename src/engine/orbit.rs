@@ -3,7 +3,7 @@
 
 use super::checkpoint::Checkpoint;
 use super::image::{self, Image};
-use super::{Request, cost};
+use super::{Request, cost, denominator};
 use crate::algebra::graded::Grading;
 use crate::algebra::prime_field::PrimeField;
 use crate::algebra::reconstruct::Reconstruction;
@@ -20,7 +20,7 @@ pub struct Lifted<'a> {
     pub orbit: &'a Orbit,
     /// Whether ±½ are roots at one loop.
     pub singular: bool,
-    /// See [`Image::values`].
+    /// Laid out as [`Image::values`], without the weights.
     pub values: Vec<Rational>,
     /// See [`Image::pair`].
     pub pair: Vec<Rational>,
@@ -87,6 +87,7 @@ pub fn lift<'a>(
     }
     let mut values = numbers.finish().unwrap_or_default();
     let pair = values.split_off(split);
+    let values = denominator::restore(orbit, &values, &denominator::orders(request, grading))?;
     Ok(Lifted { orbit, singular: singular.unwrap_or(false), values, pair })
 }
 

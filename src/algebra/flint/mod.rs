@@ -11,5 +11,5 @@ mod rational;
 mod roots;
 
 pub use factor::factor;
-pub use rational::{Remaindering, reconstruct};
+pub use rational::{Remaindering, reconstruct, reconstruct_small_denominator};
 pub use roots::{Enclosure, complex_roots, real_roots};

@@ -3,7 +3,7 @@
 
 use super::fmpz::{Fmpz, to_integer};
 use flint3_sys::{
-    fmpq, fmpq_clear, fmpq_init, fmpq_reconstruct_fmpz, fmpz_comb_clear, fmpz_comb_init, fmpz_comb_struct,
+    fmpq, fmpq_clear, fmpq_init, fmpq_reconstruct_fmpz, fmpq_reconstruct_fmpz_2, fmpz, fmpz_comb_clear, fmpz_comb_init, fmpz_comb_struct,
     fmpz_comb_temp_clear, fmpz_comb_temp_init, fmpz_comb_temp_struct, fmpz_multi_CRT_ui,
 };
 use rug::{Integer, Rational};
@@ -51,8 +51,30 @@ impl Drop for Remaindering {
     }
 }
 
+/// The rational n/d with n ≡ residue·d modulo `modulus`, d ≤ 2^`bits` and 2|n|d < modulus, if there is one.
+pub fn reconstruct_small_denominator(residue: &Integer, modulus: &Integer, bits: u32) -> Option<Rational> {
+    let denominator = Integer::from(1) << bits;
+    let numerator = (Integer::from(modulus - 1u32) >> (bits + 1)).max(Integer::from(1));
+    let (n, d) = (Fmpz::from_integer(&numerator), Fmpz::from_integer(&denominator));
+    with_arguments(residue, modulus, |value, a, m| {
+        // SAFETY: all pointers are to initialised values that outlive the call.
+        unsafe { fmpq_reconstruct_fmpz_2(value, a, m, n.as_ptr(), d.as_ptr()) != 0 }
+    })
+}
+
 /// The rational n/d with n ≡ residue·d modulo `modulus` and |n|, d ≤ √(modulus/2), if there is one.
 pub fn reconstruct(residue: &Integer, modulus: &Integer) -> Option<Rational> {
+    with_arguments(residue, modulus, |value, a, m| {
+        // SAFETY: all pointers are to initialised values that outlive the call.
+        unsafe { fmpq_reconstruct_fmpz(value, a, m) != 0 }
+    })
+}
+
+fn with_arguments(
+    residue: &Integer,
+    modulus: &Integer,
+    find: impl Fn(*mut fmpq, *const fmpz, *const fmpz) -> bool,
+) -> Option<Rational> {
     use rug::ops::RemRounding;
     let reduced = Integer::from(residue.rem_euc(modulus));
     let (a, m) = (Fmpz::from_integer(&reduced), Fmpz::from_integer(modulus));
@@ -60,7 +82,7 @@ pub fn reconstruct(residue: &Integer, modulus: &Integer) -> Option<Rational> {
     // SAFETY: the rational is initialised, read if FLINT says it found one, and cleared once.
     unsafe {
         fmpq_init(&mut value);
-        let found = fmpq_reconstruct_fmpz(&mut value, a.as_ptr(), m.as_ptr()) != 0;
+        let found = find(&mut value, a.as_ptr(), m.as_ptr());
         let result = found.then(|| Rational::from((to_integer(&value.num), to_integer(&value.den))));
         fmpq_clear(&mut value);
         result
