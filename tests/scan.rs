@@ -254,6 +254,30 @@ fn shorter_records_are_extended_and_contradictions_are_not_written_over() {
     assert_eq!(after["L08M03.json.contradicting"], long["L08M03.json"]);
 }
 
+/// Killed after the last record was written and before clearing up: the next scan finds nothing to
+/// compute and clears up, but leaves units that belong to something else.
+#[test]
+fn leftovers_of_a_killed_scan_go_even_when_nothing_is_left_to_do() {
+    let directory = tempfile::tempdir().unwrap();
+    scan(SMALL, directory.path(), 2);
+    let good = contents(directory.path());
+    let work = directory.path().join(".work");
+    let leave = |name: &str, text: &str| std::fs::write(work.join(name), text).unwrap();
+    std::fs::create_dir(&work).unwrap();
+    leave("scan.lock", "");
+    leave("L08M03.lock", "");
+    let program = loopladder::record::PROGRAM;
+    leave("L08M03.units", &format!("loopladder work units 1: {program} (8, 3) through loop 7, certificate false\n"));
+    std::fs::write(directory.path().join(".writing-abc"), "half").unwrap();
+    scan(SMALL, directory.path(), 2).verdict().unwrap();
+    assert_eq!(good, contents(directory.path()));
+    let other = format!("loopladder work units 1: {program} (8, 3) through loop 9, certificate false\n");
+    std::fs::create_dir(&work).unwrap();
+    leave("L08M03.units", &other);
+    scan(SMALL, directory.path(), 2).verdict().unwrap();
+    assert_eq!(contents(directory.path())[".work/L08M03.units"], other.into_bytes());
+}
+
 #[test]
 fn certificates_come_with_records() {
     let directory = tempfile::tempdir().unwrap();

@@ -67,7 +67,7 @@ fn a_dry_run_says_what_would_be_done_and_does_nothing() {
     assert!(output.status.success(), "{}", err(&output));
     let text = out(&output);
     assert!(text.contains("(8, 3)             3"), "{text}");
-    assert!(text.contains("5 of 5 to compute: about "), "{text}");
+    assert!(text.contains("5 of 5 to compute; estimated time "), "{text}");
     assert!(!results.exists());
     let shard = scan(&plan, &results, &["--dry-run", "--shard", "1/2"]);
     assert!(out(&shard).contains("shard 1/2: ") && out(&shard).contains(" % of the estimated time"), "{}", out(&shard));

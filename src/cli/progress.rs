@@ -37,6 +37,8 @@ struct Scan {
     finished: usize,
     estimate: f64,
     done: f64,
+    /// Threads that can run at once.
+    threads: usize,
 }
 
 /// A family in work.
@@ -92,10 +94,10 @@ impl Progress {
     }
 
     fn left(&self, scan: &Scan) -> String {
-        match time_left(self.began.elapsed().as_secs_f64(), scan.done, scan.estimate) {
+        match time_left(self.began.elapsed().as_secs_f64(), scan.done, scan.estimate, scan.threads) {
             Some(seconds) if seconds < 1.0 => "nearly done".to_string(),
             Some(seconds) => format!("about {} left", show_time(seconds)),
-            None => "time left not known yet".to_string(),
+            None => "longer than estimated".to_string(),
         }
     }
 
@@ -133,9 +135,14 @@ fn style(template: &str) -> ProgressStyle {
     ProgressStyle::with_template(template).unwrap_or_else(|_| ProgressStyle::default_bar()).progress_chars("=> ")
 }
 
-/// Seconds left, judging by how long the finished part of the estimate really took.
-fn time_left(elapsed: f64, done: f64, estimate: f64) -> Option<f64> {
-    (done > 0.0 && elapsed > 0.5).then(|| elapsed * (estimate - done).max(0.0) / done)
+/// Seconds left, judging by how long the finished part of the estimate really took; before anything is
+/// finished, by the estimate alone, and `None` when that is used up.
+fn time_left(elapsed: f64, done: f64, estimate: f64, threads: usize) -> Option<f64> {
+    if done > 0.0 && elapsed > 0.5 {
+        return Some(elapsed * (estimate - done).max(0.0) / done);
+    }
+    let left = estimate / threads.max(1) as f64 - elapsed;
+    (left > 0.0).then_some(left)
 }
 
 impl Active {
@@ -203,7 +210,7 @@ impl Watcher for Progress {
         let mut state = self.state();
         match step {
             Step::Begun { families, kept, seconds, threads } => {
-                state.scan = Some(Scan { bar: None, families, finished: 0, estimate: seconds, done: 0.0 });
+                state.scan = Some(Scan { bar: None, families, finished: 0, estimate: seconds, done: 0.0, threads });
                 if families > 0 {
                     let wall = show_time(seconds / threads.max(1) as f64);
                     let plural = if threads == 1 { "thread" } else { "threads" };
@@ -263,9 +270,10 @@ mod tests {
 
     #[test]
     fn time_left_follows_what_the_finished_part_took() {
-        assert_eq!(time_left(30.0, 10.0, 40.0), Some(90.0));
-        assert_eq!(time_left(30.0, 40.0, 40.0), Some(0.0));
-        assert_eq!(time_left(30.0, 0.0, 40.0), None);
+        assert_eq!(time_left(30.0, 10.0, 40.0, 2), Some(90.0));
+        assert_eq!(time_left(30.0, 40.0, 40.0, 2), Some(0.0));
+        assert_eq!(time_left(5.0, 0.0, 40.0, 2), Some(15.0));
+        assert_eq!(time_left(30.0, 0.0, 40.0, 2), None);
     }
 
     #[test]

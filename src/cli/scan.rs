@@ -177,7 +177,7 @@ fn preview(
     }
     let workers = settings.workers();
     text.push_str(&format!(
-        "{missing} of {} to compute: about {} on 1 core, {} on {} threads\n",
+        "{missing} of {} to compute; estimated time {} on 1 core, {} on {} threads\n",
         items.len(),
         show_time(seconds),
         show_time(seconds / workers as f64),

@@ -12,6 +12,7 @@ use crate::error::{Error, Result};
 use crate::observer::{Event, Observer};
 use rayon::iter::{IntoParallelIterator, ParallelIterator};
 use rug::Rational;
+use std::sync::atomic::{AtomicUsize, Ordering};
 
 /// An orbit with its exact numbers, laid out as in [`Image`].
 #[derive(Debug)]
@@ -67,12 +68,6 @@ pub fn lift<'a>(
             residues.extend(image.pair);
             numbers.push(PrimeField::nth(index), residues);
         }
-        observer.event(Event::Advanced {
-            family: family.clone(),
-            orbit: orbit.label.clone(),
-            unit: "primes",
-            done: numbers.primes(),
-        });
         observer.proceed()?;
         if numbers.primes() == 0 && next > 4 * FIRST_BATCH {
             return Err(Error::check(format!(
@@ -108,14 +103,25 @@ fn images(
         if request.incomplete { "a" } else { "" },
         if request.certificate { "c" } else { "" },
     );
+    let finished = AtomicUsize::new(range.start);
+    let advance = || {
+        observer.event(Event::Advanced {
+            family: request.family.to_string(),
+            orbit: orbit.label.clone(),
+            unit: "primes",
+            done: finished.fetch_add(1, Ordering::Relaxed) + 1,
+        });
+    };
     let one = |index: usize| {
         observer.proceed()?;
         let key = format!("{subject}-prime{index}");
         if let Some(image) = checkpoint.load(&key).and_then(|bytes| decode(&bytes)) {
+            advance();
             return Ok((index, image));
         }
         let image = image::image(request, orbit, grading, PrimeField::nth(index))?;
         checkpoint.store(&key, &encode(image.as_ref()))?;
+        advance();
         Ok((index, image))
     };
     let indices: Vec<usize> = range.collect();

@@ -6,6 +6,7 @@ use super::shard::{Shard, assign};
 use super::store::{Found, Store};
 use crate::engine::Cost;
 use crate::error::Result;
+use crate::family::Family;
 use std::path::PathBuf;
 
 /// One family to be computed.
@@ -33,6 +34,11 @@ pub struct Settings {
 }
 
 impl Settings {
+    /// Whether a certificate of this family is wanted: the protected one has no pair to certify.
+    pub(super) fn certify(&self, family: Family) -> bool {
+        self.certificates && !family.is_protected()
+    }
+
     /// How many threads can really run at once: for estimates.
     pub fn workers(&self) -> usize {
         std::thread::available_parallelism().map_or(self.threads, |cores| self.threads.min(cores.get())).max(1)
@@ -76,18 +82,11 @@ pub fn survey(items: &[Item], settings: &Settings) -> Result<Vec<State>> {
     items
         .iter()
         .map(|item| {
-            Ok(
-                match store.examine(
-                    item.task.family,
-                    None,
-                    item.loops,
-                    settings.certificates && !item.task.family.is_protected(),
-                )? {
-                    Found::Complete => State::Complete,
-                    Found::Missing | Found::Short(_) => State::ToCompute,
-                    Found::Damaged { path, .. } => State::Damaged(path),
-                },
-            )
+            Ok(match store.examine(item.task.family, None, item.loops, settings.certify(item.task.family))? {
+                Found::Complete => State::Complete,
+                Found::Missing | Found::Short(_) => State::ToCompute,
+                Found::Damaged { path, .. } => State::Damaged(path),
+            })
         })
         .collect()
 }

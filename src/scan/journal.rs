@@ -46,7 +46,7 @@ struct State {
 impl Journal {
     /// Opens the journal at `path` for units of `subject`; a missing, torn or foreign file is no error.
     pub fn open(path: &Path, subject: &str) -> Journal {
-        let header = format!("loopladder work units 1: {subject}\n").into_bytes();
+        let header = header(subject);
         let mut state = State {
             file: None,
             written: HashMap::new(),
@@ -62,6 +62,16 @@ impl Journal {
             state.end = end;
         }
         Journal { path: path.to_path_buf(), header, state: Mutex::new(state) }
+    }
+
+    /// Removes the file at `path` if it is a journal of `subject`, which is complete.
+    pub fn discard(path: &Path, subject: &str) {
+        let header = header(subject);
+        let mut start = vec![0; header.len()];
+        let ours = File::open(path).and_then(|mut file| file.read_exact(&mut start)).is_ok() && start == header;
+        if ours {
+            let _ = std::fs::remove_file(path);
+        }
     }
 
     /// How many units are known.
@@ -165,6 +175,11 @@ impl Drop for Journal {
         let mut state = self.state.lock().unwrap_or_else(PoisonError::into_inner);
         self.flush(&mut state);
     }
+}
+
+/// The first line of a journal.
+fn header(subject: &str) -> Vec<u8> {
+    format!("loopladder work units 1: {subject}\n").into_bytes()
 }
 
 fn encode(out: &mut Vec<u8>, key: &str, payload: &[u8]) {
@@ -287,6 +302,11 @@ mod tests {
         let directory = tempfile::tempdir().unwrap();
         let path = directory.path().join("units");
         filled(&path);
+        Journal::discard(&path, "(8, 3) through loop 9");
+        assert!(path.exists());
         assert!(Journal::open(&path, "(8, 3) through loop 9").is_empty());
+        filled(&path);
+        Journal::discard(&path, "(8, 3)");
+        assert!(!path.exists());
     }
 }

@@ -1,5 +1,6 @@
 //! What the families of one scan share, and what scans on one directory share: memory and presence.
 
+use super::journal::Journal;
 use super::lock;
 use super::store::Store;
 use super::values::show_size;
@@ -72,11 +73,12 @@ pub(super) struct Presence {
 }
 
 impl Presence {
-    /// Enters the directory; alone in it, first clears up.
+    /// Enters the directory; alone in it, first clears up, `units` (journals and what they must belong to)
+    /// included.
     ///
     /// # Errors
     /// The file cannot be created.
-    pub fn enter(store: &Store, observer: &dyn Observer) -> Result<Presence> {
+    pub fn enter(store: &Store, units: &[(PathBuf, String)], observer: &dyn Observer) -> Result<Presence> {
         let path = store.work().join("scan.lock");
         let failed = |cause| {
             Error::io(format!("cannot create {}; check that the output directory is writable", path.display()), cause)
@@ -87,6 +89,7 @@ impl Presence {
                 Ok(()) if !lock::is_current(&file, &path) => continue,
                 Ok(()) => {
                     store.clear_leftovers();
+                    units.iter().for_each(|(path, subject)| Journal::discard(path, subject));
                     let _ = file.unlock();
                     None
                 }

@@ -11,10 +11,10 @@ use super::lock::{self, Attempt};
 use super::resources::{Budget, Presence};
 use super::store::{Found, Store, is_storage_failure};
 use super::summary::{Outcome, Summary};
-use super::work::{Progress, complete_family};
+use super::work::{Progress, complete_family, units_of};
 use crate::error::{Error, Kind, Result};
 use crate::family::Family;
-use crate::observer::{Event, Observer};
+use crate::observer::{Event, Observer, Silent};
 use std::collections::VecDeque;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{RecvTimeoutError, Sender, channel};
@@ -86,12 +86,7 @@ pub fn run(
     let mut outcomes: Vec<Option<Outcome>> = Vec::new();
     for item in &items {
         // An unreadable file is met again, and reported, when the family's turn comes.
-        let found = store.examine(
-            item.task.family,
-            None,
-            item.loops,
-            settings.certificates && !item.task.family.is_protected(),
-        );
+        let found = store.examine(item.task.family, None, item.loops, settings.certify(item.task.family));
         outcomes.push(matches!(found, Ok(Found::Complete)).then_some(Outcome::Kept));
     }
     let todo: Vec<usize> = (0..items.len()).filter(|&index| outcomes[index].is_none()).collect();
@@ -112,12 +107,20 @@ pub fn run(
         seconds: todo.iter().map(|&index| items[index].cost.seconds).sum(),
         threads: settings.workers(),
     });
+    // Units of complete families, left by a scan that was killed just then.
+    let complete = (0..items.len()).filter(|&index| outcomes[index].is_some());
+    let units: Vec<_> = complete.map(|index| units_of(&items[index], &store, settings)).collect();
     if todo.is_empty() {
+        if store.work().is_dir()
+            && let Ok(presence) = Presence::enter(&store, &units, &Silent)
+        {
+            presence.leave(&store);
+        }
         return Ok(summary(outcomes, false, None));
     }
 
     store.prepare()?;
-    let presence = Presence::enter(&store, &*watcher)?;
+    let presence = Presence::enter(&store, &units, &*watcher)?;
     let (sender, receiver) = channel();
     let crew = Arc::new(Crew {
         items: items.clone(),

@@ -8,6 +8,7 @@ use crate::error::{Error, Result};
 use crate::observer::{Event, Observer};
 use crate::record::Record;
 use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::path::PathBuf;
 
 /// Everything that is needed for one family; the caller holds its lock.
 pub(super) struct Order<'a> {
@@ -38,13 +39,8 @@ pub(super) fn complete_family(order: &Order) -> Result<Progress> {
         Look::Complete => return Ok(Progress::WasThere),
         Look::Needed(earlier) => earlier,
     };
-    let subject = format!(
-        "{} {family} through loop {}, certificate {}",
-        crate::record::PROGRAM,
-        order.item.loops,
-        wants_certificate(order)
-    );
-    let journal = Journal::open(&order.store.work_file(family, "units"), &subject);
+    let (path, subject) = units_of(order.item, order.store, order.settings);
+    let journal = Journal::open(&path, &subject);
     (order.started)(journal.len());
     let written = catch_unwind(AssertUnwindSafe(|| order.pool.install(|| compute(order, &journal, earlier))))
         .unwrap_or_else(|panic| Err(fault(family, &*panic)));
@@ -82,16 +78,19 @@ fn one(order: &Order, journal: &Journal, orbit: Option<&str>, earlier: Option<Bo
         family,
         loops: order.item.loops,
         orbit: orbit.map(str::to_string),
-        certificate: wants_certificate(order),
+        certificate: order.settings.certify(order.item.task.family),
     };
     let product = order.calculator.compute(&job, order.settings.memory, journal, order.observer)?;
     let path = order.store.record_path(family, orbit);
     order.store.write(&path, &product.record, product.certificate.as_deref(), earlier.as_deref())
 }
 
-/// The protected family has no pair to certify.
-fn wants_certificate(order: &Order) -> bool {
-    order.settings.certificates && !order.item.task.family.is_protected()
+/// The journal of a family, and what its units belong to.
+pub(super) fn units_of(item: &Item, store: &Store, settings: &Settings) -> (PathBuf, String) {
+    let (family, loops) = (item.task.family, item.loops);
+    let certificate = settings.certify(family);
+    let subject = format!("{} {family} through loop {loops}, certificate {certificate}", crate::record::PROGRAM);
+    (store.work_file(family, "units"), subject)
 }
 
 enum Look {
@@ -103,7 +102,12 @@ enum Look {
 /// What is there; damaged files are moved aside, and that is said.
 fn look(order: &Order, orbit: Option<&str>) -> Result<Look> {
     loop {
-        match order.store.examine(order.item.task.family, orbit, order.item.loops, wants_certificate(order))? {
+        match order.store.examine(
+            order.item.task.family,
+            orbit,
+            order.item.loops,
+            order.settings.certify(order.item.task.family),
+        )? {
             Found::Complete => return Ok(Look::Complete),
             Found::Missing => return Ok(Look::Needed(None)),
             Found::Short(record) => return Ok(Look::Needed(Some(record))),
