@@ -321,6 +321,33 @@ fn structure(length: usize, orbit: &Orbit) {
     }
 }
 
+/// Every printed decimal is the root it stands for, rounded: the minimal polynomial changes sign within half a
+/// unit of the last place, and there are as many different ones as its degree.
+#[test]
+fn decimals_are_certain() {
+    for (length, magnons) in [(6, 2), (8, 4), (9, 3), (10, 4), (11, 5), (12, 4), (12, 5), (12, 6)] {
+        for orbit in record(length, magnons, 1).orbits {
+            let minimal: Vec<Rational> = orbit.minimal_polynomial.iter().map(|c| rational(c)).collect();
+            let mut last = Rational::from(-1);
+            for state in &orbit.states {
+                if orbit.degree() == 1 {
+                    assert!(poly::evaluate(&Rationals, &minimal, &rational(&state.omega)).is_zero());
+                    continue;
+                }
+                assert_eq!(state.omega, state.one_loop, "{}", orbit.label);
+                let (value, unit) = decimal(&state.omega);
+                assert!(unit < Rational::from((1, 1_000_000_000_000_000_000u64)) && value > last, "{}", orbit.label);
+                let half = unit / 2;
+                let ends = [Rational::from(&value - &half), Rational::from(&value + &half)];
+                let signs = ends.map(|end| poly::evaluate(&Rationals, &minimal, &end).cmp0());
+                assert_ne!(signs[0], signs[1], "{}: {}", orbit.label, state.omega);
+                last = value;
+            }
+            assert_eq!(orbit.states.len(), orbit.degree());
+        }
+    }
+}
+
 /// A store in memory that counts.
 #[derive(Default)]
 struct Memory {

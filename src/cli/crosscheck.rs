@@ -52,13 +52,13 @@ pub fn run(arguments: &Arguments, console: &Console) -> Result<()> {
     let family = Family::new(arguments.length, arguments.magnons)?;
     crosscheck::check(family, arguments.loops)?;
     let stored = arguments.record.as_deref().map(record::read).transpose()?;
-    if let Some(stored) = &stored {
-        if (stored.length, stored.magnons) != (family.length, family.magnons) {
-            return Err(Error::input(format!(
-                "the record is of family ({}, {}) and {family} was asked for; give the record's family",
-                stored.length, stored.magnons
-            )));
-        }
+    if let Some(stored) = &stored
+        && (stored.length, stored.magnons) != (family.length, family.magnons)
+    {
+        return Err(Error::input(format!(
+            "the record is of family ({}, {}) and {family} was asked for; give the record's family",
+            stored.length, stored.magnons
+        )));
     }
     interrupt::listen(Duration::from_millis(1500))?;
     let progress = Progress::new(console);

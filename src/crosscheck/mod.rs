@@ -107,7 +107,7 @@ fn primaries(family: Family, reversal: Reversal, observer: &dyn Observer) -> Res
         })
     };
     let one_loop: Vec<Integer> = chi(0)?.into_iter().map(|mut c| c.swap_remove(0)).collect();
-    let most = flint::factor(&one_loop).iter().map(|(_, multiplicity)| *multiplicity as usize).max().unwrap_or(1);
+    let most = flint::factor(&one_loop).iter().map(|(_, multiplicity)| *multiplicity).max().unwrap_or(1);
     chi(2 * most)
 }
 
@@ -218,11 +218,12 @@ fn found(chi: &Polynomial, claim: &Claim) -> Found {
         })
         .collect();
     let mut correction = None;
-    if valuations.len() == 2 && (1..claim.values.len()).contains(&valuations[0]) {
-        if let Some(inverse) = field.inverse(&coefficients[1][0]) {
-            let step = field.neg(&field.mul(&coefficients[0][valuations[0]], &inverse));
-            correction = Some((valuations[0] + 1, field.coefficients(&step)));
-        }
+    if valuations.len() == 2
+        && (1..claim.values.len()).contains(&valuations[0])
+        && let Some(inverse) = field.inverse(&coefficients[1][0])
+    {
+        let step = field.neg(&field.mul(&coefficients[0][valuations[0]], &inverse));
+        correction = Some((valuations[0] + 1, field.coefficients(&step)));
     }
     Found { agreeing, correction }
 }
