@@ -305,6 +305,7 @@ mod tests {
         Journal::discard(&path, "(8, 3) through loop 9");
         assert!(path.exists());
         assert!(Journal::open(&path, "(8, 3) through loop 9").is_empty());
+        std::fs::remove_file(&path).unwrap();
         filled(&path);
         Journal::discard(&path, "(8, 3)");
         assert!(!path.exists());
