@@ -34,7 +34,7 @@ impl Frame {
     /// recursion, ∝ N, against that of the expansions, ∝ K².
     pub fn new(family: Family, symmetric: bool, orders: usize, digits: u32) -> Frame {
         let working = f64::from(digits) + orders as f64 + family.length as f64 / 2.0 + GUARD;
-        let points = (2.6 * working).ceil() as usize + 2 * family.length + 10;
+        let points = (1.2 * working).ceil() as usize + 2 * family.length + 10;
         let step = if symmetric { 2 } else { 1 };
         let growth = 2.0 * std::f64::consts::PI * std::f64::consts::E * (points as f64 + 0.5);
         let mut terms = 10.0;
