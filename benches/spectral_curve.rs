@@ -19,7 +19,8 @@ fn solve<S: Scalar>(length: usize, magnons: usize, orders: usize, digits: u32) -
     let family = Family { length, magnons };
     let orbit = spectrum(family, &Silent).expect("spectrum").swap_remove(0);
     let state = of_orbit(&orbit, digits + 60).expect("decimals").swap_remove(0);
-    let mut solver = Solver::<S>::new(Frame::new(family, orbit.parity == Parity::Symmetric, orders, digits), &state).expect("state");
+    let mut solver =
+        Solver::<S>::new(Frame::new(family, orbit.parity == Parity::Symmetric, orders, digits), &state).expect("state");
     for _ in 0..orders {
         solver.advance(None).expect("order");
     }
@@ -31,11 +32,18 @@ fn curve(c: &mut Criterion) {
     group.sample_size(10);
     group.bench_function("L = 4, M = 2, 6 loops, 100 digits", |b| b.iter(|| solve::<Real>(black_box(4), 2, 6, 100)));
     group.bench_function("L = 6, M = 3, 5 loops, 50 digits", |b| b.iter(|| solve::<Real>(black_box(6), 3, 5, 50)));
-    group.bench_function("L = 7, M = 3, pair, 3 loops, 30 digits", |b| b.iter(|| solve::<Complex>(black_box(7), 3, 3, 30)));
+    group.bench_function("L = 7, M = 3, pair, 3 loops, 30 digits", |b| {
+        b.iter(|| solve::<Complex>(black_box(7), 3, 3, 30))
+    });
     let numbers: Vec<Float> = basis(8).iter().map(|element| element.value(1200)).collect();
-    let value = numbers.iter().enumerate().fold(Float::new(1200), |sum, (i, x)| sum + Float::with_val(1200, x * (1000 * i as i64 - 7777)));
+    let value = numbers
+        .iter()
+        .enumerate()
+        .fold(Float::new(1200), |sum, (i, x)| sum + Float::with_val(1200, x * (1000 * i as i64 - 7777)));
     let error = Float::with_val(53, Float::i_exp(1, -800));
-    group.bench_function("relation among 20 numbers at 240 digits", |b| b.iter(|| relation(black_box(&value), &error, &numbers)));
+    group.bench_function("relation among 20 numbers at 240 digits", |b| {
+        b.iter(|| relation(black_box(&value), &error, &numbers))
+    });
     group.finish();
 }
 

@@ -43,7 +43,12 @@ fn main() {
     };
     let stages = Stages { load: &|_| None, store: &|_, _| Ok(()) };
     let extension = extend(&request, &stages, &Printer(start)).expect("extension");
-    println!("{:.1} s; consistency {:.0} digits, agreement {:.0} digits", start.elapsed().as_secs_f64(), extension.consistency, extension.agreement);
+    println!(
+        "{:.1} s; consistency {:.0} digits, agreement {:.0} digits",
+        start.elapsed().as_secs_f64(),
+        extension.consistency,
+        extension.agreement
+    );
     for coefficient in &extension.coefficients {
         println!("{}", serde_json::to_string(coefficient).expect("json"));
     }

@@ -23,7 +23,11 @@ fn main() {
     let frame = Frame::new(family, !complex, loops, digits as u32);
     let state = of_orbit(&orbit, frame.bits as u32 / 3).expect("decimals").swap_remove(0);
     println!("{}, omega = {:.20}: {frame:?}", state.label, state.omega);
-    if complex { run(|| Solver::<Complex>::new(frame.clone(), &state).map(|s| Box::new(s) as Box<dyn Steps>), loops) } else { run(|| Solver::<Real>::new(frame.clone(), &state).map(|s| Box::new(s) as Box<dyn Steps>), loops) }
+    if complex {
+        run(|| Solver::<Complex>::new(frame.clone(), &state).map(|s| Box::new(s) as Box<dyn Steps>), loops)
+    } else {
+        run(|| Solver::<Real>::new(frame.clone(), &state).map(|s| Box::new(s) as Box<dyn Steps>), loops)
+    }
 }
 
 trait Steps {
@@ -43,7 +47,11 @@ fn run(make: impl Fn() -> loopladder::error::Result<Box<dyn Steps>>, loops: usiz
     println!("set up: {:.2} s", start.elapsed().as_secs_f64());
     for n in 1..=loops {
         let (gamma, digits) = solver.step();
-        println!("{n} {:.1} digits {:.2} s  {}", digits, start.elapsed().as_secs_f64(), gamma.to_string_radix(10, Some(80)));
+        println!(
+            "{n} {:.1} digits {:.2} s  {}",
+            digits,
+            start.elapsed().as_secs_f64(),
+            gamma.to_string_radix(10, Some(80))
+        );
     }
 }
-

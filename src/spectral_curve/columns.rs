@@ -29,7 +29,10 @@ struct Pole<S> {
 
 impl<S: Scalar> Solver<S> {
     pub(super) fn response_index(&self, a: usize, exponent: i64) -> usize {
-        self.responses.iter().position(|response| (response.a, response.exponent) == (a, exponent)).unwrap_or(usize::MAX)
+        self.responses
+            .iter()
+            .position(|response| (response.a, response.exponent) == (a, exponent))
+            .unwrap_or(usize::MAX)
     }
 
     /// How γ_n enters: A₃ through its derivative, A₁ likewise, both at h = 0, halved.
@@ -52,7 +55,8 @@ impl<S: Scalar> Solver<S> {
                 sum.add_mul(rho, &self.cut.plus_at(frame, column, x - r as i64, y), bits);
             }
         }
-        let right: &[(usize, &[S])] = if equation == 0 { &[(2, &self.alpha)] } else { &[(3, &self.beta), (2, &self.delta)] };
+        let right: &[(usize, &[S])] =
+            if equation == 0 { &[(2, &self.alpha)] } else { &[(3, &self.beta), (2, &self.delta)] };
         for (i, list) in right {
             for (r, factor) in list.iter().enumerate().filter(|(_, factor)| !factor.is_zero()) {
                 sum.sub(&factor.mul(&self.cut.bar_at(frame, *i, x - wrap - r as i64, y + wrap), bits), bits);
@@ -67,7 +71,9 @@ impl<S: Scalar> Solver<S> {
         one.turn(unknown.phase(&self.frame));
         let powers = match unknown {
             Unknown::Power { a, exponent } => vec![(self.response_index(a, exponent), one.clone())],
-            Unknown::Gamma => self.gamma_weights().into_iter().map(|(index, weight)| (index, S::from_real(&weight))).collect(),
+            Unknown::Gamma => {
+                self.gamma_weights().into_iter().map(|(index, weight)| (index, S::from_real(&weight))).collect()
+            }
             _ => Vec::new(),
         };
         let mut column = Column { unknown, one, plus: Vec::new(), bar: Vec::new(), poles: Vec::new() };
@@ -88,7 +94,13 @@ impl<S: Scalar> Solver<S> {
                         let p = &self.functions.polynomial[partner(b)][0];
                         let negative = raising_is_negative(b) != (bar && reflection_is_negative(&self.frame, b));
                         for t in 0..len {
-                            sum[t].dot(negative, Run::forward(p, 0), Run::backward(&change, t), p.len().min(t + 1), bits);
+                            sum[t].dot(
+                                negative,
+                                Run::forward(p, 0),
+                                Run::backward(&change, t),
+                                p.len().min(t + 1),
+                                bits,
+                            );
                         }
                     }
                     // The change of p^b times Q_b.
@@ -142,7 +154,8 @@ impl<S: Scalar> Solver<S> {
                 for (i, factor) in left.into_iter().filter(|(_, factor)| !factor.is_zero()) {
                     sum.add_mul(&self.plus_change(n, column, i, x, y), factor, bits);
                 }
-                let right: &[(usize, &S)] = if equation == 0 { &[(2, &self.alpha[0])] } else { &[(3, &self.beta[0]), (2, &self.delta[0])] };
+                let right: &[(usize, &S)] =
+                    if equation == 0 { &[(2, &self.alpha[0])] } else { &[(3, &self.beta[0]), (2, &self.delta[0])] };
                 for (i, factor) in right.iter().filter(|(_, factor)| !factor.is_zero()) {
                     sum.sub(&self.bar_change(n, column, *i, x - wrap, y + wrap).mul(factor, bits), bits);
                 }

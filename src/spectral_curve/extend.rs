@@ -94,7 +94,10 @@ pub fn extend(request: &Request, stages: &Stages, observer: &dyn Observer) -> Re
             let cost = plan::cost(family, orbit.parity, orbit.degree(), &again);
             if request.memory.is_none_or(|limit| cost.bytes <= limit) {
                 observer.event(Event::Remark {
-                    text: format!("orbit {}: not every order was recognised at {} digits; once more at {}", orbit.label, run.digits, again.digits),
+                    text: format!(
+                        "orbit {}: not every order was recognised at {} digits; once more at {}",
+                        orbit.label, run.digits, again.digits
+                    ),
                 });
                 let better = one_run(request, &again, exact, stages, observer, &mut extension)?;
                 for (old, new) in found.iter_mut().zip(better) {
@@ -110,7 +113,14 @@ pub fn extend(request: &Request, stages: &Stages, observer: &dyn Observer) -> Re
 }
 
 /// One run: all states, the checks, and the coefficients of its orders.
-fn one_run(request: &Request, run: &Run, exact: usize, stages: &Stages, observer: &dyn Observer, extension: &mut Extension) -> Result<Vec<Coefficient>> {
+fn one_run(
+    request: &Request,
+    run: &Run,
+    exact: usize,
+    stages: &Stages,
+    observer: &dyn Observer,
+    extension: &mut Extension,
+) -> Result<Vec<Coefficient>> {
     let values = solve_all(request, run, stages, observer)?;
     extension.consistency = extension.consistency.min(values.consistency);
     extension.agreement = extension.agreement.min(agreement(request, &values, exact)?);
@@ -137,7 +147,12 @@ fn solve_all(request: &Request, run: &Run, stages: &Stages, observer: &dyn Obser
         )));
     }
     let total = states.len() * run.last;
-    observer.event(Event::Planned { family: family.to_string(), orbit: orbit.label.clone(), unit: "curve orders", total });
+    observer.event(Event::Planned {
+        family: family.to_string(),
+        orbit: orbit.label.clone(),
+        unit: "curve orders",
+        total,
+    });
     let mut values = Values { omegas: Vec::new(), gamma: Vec::new(), certain: 0, consistency: f64::INFINITY };
     for (index, state) in states.iter().enumerate() {
         let one = Work { frame: &frame, state, index, total: index * run.last, family, label: &orbit.label };
@@ -198,7 +213,11 @@ fn agreement(request: &Request, values: &Values, exact: usize) -> Result<f64> {
             let expected = value_at(&coefficient.terms, omega, found.prec());
             let difference = Float::with_val(found.prec(), found - &expected).abs();
             let scale = Float::with_val(found.prec(), expected.abs_ref()).max(&Float::with_val(53, 1));
-            let digits = if difference.is_zero() { f64::INFINITY } else { -Float::with_val(53, difference / scale).log10().to_f64() };
+            let digits = if difference.is_zero() {
+                f64::INFINITY
+            } else {
+                -Float::with_val(53, difference / scale).log10().to_f64()
+            };
             if digits < f64::from(values.certain) {
                 return Err(Error::check(format!(
                     "orbit {}, loop {}, omega = {:.10}: the spectral curve and the exact coefficient agree to {digits:.1} digits, and {} are claimed; one of the two is wrong, so nothing past loop {exact} is given; please report this state",
@@ -252,7 +271,14 @@ fn recognise(request: &Request, values: &Values, order: usize) -> Option<Coeffic
     if terms.is_empty() {
         terms.push(Term { zeta: Vec::new(), value: vec!["0".to_string(); degree] });
     }
-    Some(Coefficient { order, status: Status::Recognised, terms, parts: None, spare_digits: Some(spare as u32), numbers: Vec::new() })
+    Some(Coefficient {
+        order,
+        status: Status::Recognised,
+        terms,
+        parts: None,
+        spare_digits: Some(spare as u32),
+        numbers: Vec::new(),
+    })
 }
 
 fn numeric(values: &Values, order: usize) -> Coefficient {

@@ -57,7 +57,10 @@ impl<S: Scalar> Side<S> {
 impl<S: Scalar> Cut<S> {
     /// Nothing known yet.
     pub fn new(frame: &Frame) -> Cut<S> {
-        Cut { plus: std::array::from_fn(|_| Side::new(frame.orders)), bar: std::array::from_fn(|_| Side::new(frame.orders)) }
+        Cut {
+            plus: std::array::from_fn(|_| Side::new(frame.orders)),
+            bar: std::array::from_fn(|_| Side::new(frame.orders)),
+        }
     }
 
     /// Enters everything of stage n: the regular part at order n, and the k-th pole at order n − k.
@@ -73,7 +76,13 @@ impl<S: Scalar> Cut<S> {
                         let (series, negative) = prepared(frame, &ends[n - m][i][b], b, bar);
                         for t in 0..len.min(series.len()) {
                             let count = factor.len().min(t + 1);
-                            side.regular[n][t].dot(negative, Run::forward(factor, 0), Run::backward(&series, t), count, frame.bits);
+                            side.regular[n][t].dot(
+                                negative,
+                                Run::forward(factor, 0),
+                                Run::backward(&series, t),
+                                count,
+                                frame.bits,
+                            );
                         }
                     }
                 }
@@ -110,7 +119,14 @@ impl<S: Scalar> Cut<S> {
             let b = x - order;
             add_binomial(&mut sum, &side.regular[order as usize], b, y + 2 * b, false, frame.bits);
             for k in 1..=x + y - order {
-                add_binomial(&mut sum, &side.pole[order as usize][k as usize], b, y - k + 2 * b, k % 2 == 1, frame.bits);
+                add_binomial(
+                    &mut sum,
+                    &side.pole[order as usize][k as usize],
+                    b,
+                    y - k + 2 * b,
+                    k % 2 == 1,
+                    frame.bits,
+                );
             }
         }
         sum

@@ -13,10 +13,15 @@ use rug::{Float, Integer, Rational};
 /// # Errors
 /// Roots of the field's polynomial that do not match the parity of the orbit.
 pub fn of_orbit(orbit: &Orbit, digits: u32) -> Result<Vec<OneLoop>> {
-    let bits = (f64::from(digits) * std::f64::consts::LOG2_10) as u32 + 64 * (orbit.field.len() as u32 + 1) + 8 * orbit.family.length as u32;
+    let bits = (f64::from(digits) * std::f64::consts::LOG2_10) as u32
+        + 64 * (orbit.field.len() as u32 + 1)
+        + 8 * orbit.family.length as u32;
     let precision = i64::from(bits);
-    let middle = |low: &Rational, high: &Rational| Real::from_rational(&Rational::from(Rational::from(low + high) / 2u32), precision);
-    let derivative: Vec<Integer> = orbit.field.iter().enumerate().skip(1).map(|(i, c)| Integer::from(c * i as u32)).collect();
+    let middle = |low: &Rational, high: &Rational| {
+        Real::from_rational(&Rational::from(Rational::from(low + high) / 2u32), precision)
+    };
+    let derivative: Vec<Integer> =
+        orbit.field.iter().enumerate().skip(1).map(|(i, c)| Integer::from(c * i as u32)).collect();
     let mut states: Vec<OneLoop> = Vec::new();
     for (re, im) in complex_roots(&orbit.field, bits) {
         let x = Complex::from_parts(&middle(&re.low, &re.high), &middle(&im.low, &im.high));
@@ -28,7 +33,10 @@ pub fn of_orbit(orbit: &Orbit, digits: u32) -> Result<Vec<OneLoop>> {
             difference.is_zero() || difference.get_exp().unwrap_or(0) < -(bits as i32) / 2
         };
         if omega.im().magnitude() > -precision / 2 || (orbit.parity == Parity::Symmetric && !im.low.is_zero()) {
-            return Err(Error::check(format!("orbit {}: a root of its field belongs to no real value of omega; please report this family", orbit.label)));
+            return Err(Error::check(format!(
+                "orbit {}: a root of its field belongs to no real value of omega; please report this family",
+                orbit.label
+            )));
         }
         if states.iter().any(close) {
             continue;

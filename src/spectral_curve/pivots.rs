@@ -62,7 +62,8 @@ fn pivot(matrix: &Matrix, bits: i64) -> Pivot {
         })
     });
     let overlap: Rational = (0..4).map(|j| Rational::from(&kernel[j] * &left[j])).sum();
-    let scaled: Vec<Rational> = left.iter().map(|x| if overlap.is_zero() { x.clone() } else { Rational::from(x / &overlap) }).collect();
+    let scaled: Vec<Rational> =
+        left.iter().map(|x| if overlap.is_zero() { x.clone() } else { Rational::from(x / &overlap) }).collect();
     Pivot { inverse, kernel: Some((convert(&kernel), convert(&scaled))) }
 }
 
@@ -135,7 +136,9 @@ mod tests {
         for (length, magnons) in [(4, 2), (5, 2), (7, 3), (8, 4)] {
             let frame = Frame::new(Family { length, magnons }, false, 2, 30);
             let third = leading_coefficients(&frame).0[0].clone();
-            for (i, expected) in [vec![0, length - 1, length], vec![0, 1, length, length + 1], vec![0], vec![0, 1]].iter().enumerate() {
+            for (i, expected) in
+                [vec![0, length - 1, length], vec![0, 1, length, length + 1], vec![0], vec![0, 1]].iter().enumerate()
+            {
                 let found: Vec<usize> = pivots(&frame, i, &third)
                     .iter()
                     .enumerate()

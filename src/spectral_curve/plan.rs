@@ -72,10 +72,15 @@ fn expected_height(orbit: &Orbit, order: usize) -> f64 {
         .coefficients
         .iter()
         .filter(|coefficient| !coefficient.terms.is_empty() && coefficient.order < order)
-        .map(|coefficient| (coefficient.order, traces.height(&coefficient.terms.iter().map(values).collect::<Vec<_>>())))
+        .map(|coefficient| {
+            (coefficient.order, traces.height(&coefficient.terms.iter().map(values).collect::<Vec<_>>()))
+        })
         .collect();
     let Some(&(last, height)) = known.last() else { return 2.0 + SLOPE * order as f64 };
-    let slope = known.first().filter(|(first, _)| *first < last).map_or(SLOPE, |(first, low)| (height - low) / (last - first) as f64);
+    let slope = known
+        .first()
+        .filter(|(first, _)| *first < last)
+        .map_or(SLOPE, |(first, low)| (height - low) / (last - first) as f64);
     height + (order - last) as f64 * slope.max(SLOPE) + 1.0
 }
 
@@ -107,16 +112,18 @@ pub fn cost(family: Family, parity: Parity, embeddings: usize, run: &Run) -> Cos
     let logs: f64 = (0..=run.last).map(|n| n as f64 + 1.0).sum();
     let tails = (logs + 2.0 * responses) * 36.0 * terms;
     let bytes = (20.0 * points * kept + tails) * each * planes;
-    let recursion: f64 = (1..run.last)
-        .map(|n| n as f64 * (frame.window(n) as f64).powi(2))
-        .sum::<f64>()
-        * 16.0
-        * points;
+    let recursion: f64 =
+        (1..run.last).map(|n| n as f64 * (frame.window(n) as f64).powi(2)).sum::<f64>() * 16.0 * points;
     let stride = 2.0 / frame.step as f64;
-    let expansion: f64 = ((0..=run.last).map(|n| ((n + 1) * (n + 2)) as f64).sum::<f64>() + 6.0 * responses) * 16.0 * terms * terms / (2.0 * stride);
+    let expansion: f64 =
+        ((0..=run.last).map(|n| ((n + 1) * (n + 2)) as f64).sum::<f64>() + 6.0 * responses) * 16.0 * terms * terms
+            / (2.0 * stride);
     // About 12 ns a limb up to 8 limbs, and the square of the length beyond, Karatsuba from 16 on.
     let multiplication = 3e-9 * limbs.powf(1.6) + 3e-8;
-    Cost { bytes: bytes as u64, seconds: embeddings as f64 * (recursion * 0.6 + expansion * 0.6) * multiplication * products }
+    Cost {
+        bytes: bytes as u64,
+        seconds: embeddings as f64 * (recursion * 0.6 + expansion * 0.6) * multiplication * products,
+    }
 }
 
 /// Refuses a run that does not fit into `memory` bytes.

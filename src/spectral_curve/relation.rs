@@ -73,13 +73,17 @@ mod tests {
     use super::{Float, Rational, relation};
 
     fn numbers(bits: u32) -> Vec<Float> {
-        [1u32, 3, 5, 7].into_iter().map(|k| if k == 1 { Float::with_val(bits, 1) } else { Float::with_val(bits, Float::zeta_u(k)) }).collect()
+        [1u32, 3, 5, 7]
+            .into_iter()
+            .map(|k| if k == 1 { Float::with_val(bits, 1) } else { Float::with_val(bits, Float::zeta_u(k)) })
+            .collect()
     }
 
     #[test]
     fn finds_a_planted_relation_and_no_other() {
         let basis = numbers(600);
-        let planted = [Rational::from((-2496, 1)), Rational::from((1153, 2)), Rational::from((-1440, 7)), Rational::new()];
+        let planted =
+            [Rational::from((-2496, 1)), Rational::from((1153, 2)), Rational::from((-1440, 7)), Rational::new()];
         let mut value = Float::new(600);
         for (c, b) in planted.iter().zip(&basis) {
             value += Float::with_val(600, b * c);

@@ -1,7 +1,7 @@
 //! The order-by-order solution for one state.
 
-use super::frame::{Frame, partner, raising_is_negative};
 use super::columns::Column;
+use super::frame::{Frame, partner, raising_is_negative};
 use super::gluing::Cut;
 use super::input::OneLoop;
 use super::laurent::{Functions, Laurent, divide_by_variable, leading_coefficients, multiply_by_variable};
@@ -150,7 +150,8 @@ impl<S: Scalar> Solver<S> {
         });
         let violated = results.iter().map(|(_, violated)| *violated).max().unwrap_or(0);
         if violated > -frame.bits / 2 {
-            return Err(self.failed(n, &format!("the expansion at large v needs a higher power of the logarithm (2^{violated})")));
+            return Err(self
+                .failed(n, &format!("the expansion at large v needs a higher power of the logarithm (2^{violated})")));
         }
         Ok(results.map(|(tail, _)| tail))
     }
@@ -163,7 +164,11 @@ impl<S: Scalar> Solver<S> {
     }
 
     fn start(&self, tails: &[Tail<S>; 4], len: usize) -> [[Vec<S>; 4]; 4] {
-        for_each_solution(|i| std::array::from_fn(|a| at_far_point(&self.frame, &tails[i].b[a], self.frame.exponent(i, a), len, &self.log)))
+        for_each_solution(|i| {
+            std::array::from_fn(|a| {
+                at_far_point(&self.frame, &tails[i].b[a], self.frame.exponent(i, a), len, &self.log)
+            })
+        })
     }
 
     fn response(&self, a: usize, exponent: i64) -> Result<Response<S>> {
@@ -183,7 +188,9 @@ impl<S: Scalar> Solver<S> {
             solve(frame, &self.leading_at(i), i, 1, 1, source, false)
         });
         if let Some((_, violated)) = results.iter().find(|(_, violated)| *violated > -frame.bits / 2) {
-            return Err(self.failed(1, &format!("a response at large v needs a higher power of the logarithm (2^{violated})")));
+            return Err(
+                self.failed(1, &format!("a response at large v needs a higher power of the logarithm (2^{violated})"))
+            );
         }
         let tails = results.map(|(tail, _)| tail);
         let len = frame.wrap() + 1;
@@ -301,7 +308,8 @@ impl<S: Scalar> Solver<S> {
 
     /// Room for the coefficients of the gluing matrix through order n.
     fn reserve(&mut self, n: usize) {
-        for list in [&mut self.alpha, &mut self.beta, &mut self.delta].into_iter().chain(self.rho.iter_mut().flatten()) {
+        for list in [&mut self.alpha, &mut self.beta, &mut self.delta].into_iter().chain(self.rho.iter_mut().flatten())
+        {
             while list.len() <= n {
                 list.push(S::zero());
             }
@@ -323,7 +331,11 @@ impl<S: Scalar> Solver<S> {
             let rows: Vec<Vec<S>> = places
                 .par_iter()
                 .map(|&(x, y)| {
-                    columns.iter().map(|column| self.column_at(n, column, equation, x, y)).chain([self.value_at(equation, x, y)]).collect()
+                    columns
+                        .iter()
+                        .map(|column| self.column_at(n, column, equation, x, y))
+                        .chain([self.value_at(equation, x, y)])
+                        .collect()
                 })
                 .collect();
             rows.iter().for_each(|row| system.push(row));
@@ -333,7 +345,9 @@ impl<S: Scalar> Solver<S> {
         };
         let consistency = -(solution.inconsistency as f64) * std::f64::consts::LOG10_2;
         if consistency < 10.0 {
-            return Err(self.failed(n, &format!("the overdetermined gluing conditions agree to {consistency:.1} digits only")));
+            return Err(
+                self.failed(n, &format!("the overdetermined gluing conditions agree to {consistency:.1} digits only"))
+            );
         }
         Ok(Stage { values: solution.values, consistency })
     }

@@ -27,7 +27,7 @@ pub fn leading_polynomials<S: Scalar>(frame: &Frame, q: &[S], r: &[S]) -> Result
     k.iter_mut().for_each(Scalar::negate);
     let mut regular = product(&shift_half(&g, -1, bits), r, bits);
     subtract(&mut regular, &product(&shift_half(&h, -1, bits), q, bits), bits);
-    negate_subtract(&mut k, &regular, bits);
+    add(&mut k, &regular, bits);
     let degrees = frame.degrees();
     let take = |x: &[S], degree: i64| -> Result<Poly<S>> {
         let mut difference = shift_half(x, 1, bits);
@@ -160,7 +160,7 @@ fn subtract<S: Scalar>(x: &mut Poly<S>, y: &[S], bits: i64) {
 }
 
 /// x ← x + y.
-fn negate_subtract<S: Scalar>(x: &mut Poly<S>, y: &[S], bits: i64) {
+fn add<S: Scalar>(x: &mut Poly<S>, y: &[S], bits: i64) {
     let mut minus = y.to_vec();
     minus.iter_mut().for_each(Scalar::negate);
     subtract(x, &minus, bits);

@@ -29,7 +29,15 @@ impl<S: Scalar> LeadingPoints<S> {
         LeadingPoints(
             (1..=frame.points)
                 .into_par_iter()
-                .map(|j| std::array::from_fn(|a| if degrees[a] < 0 { Vec::new() } else { lowered[a].taylor(j, degrees[a] as usize + 1, frame.bits) }))
+                .map(|j| {
+                    std::array::from_fn(|a| {
+                        if degrees[a] < 0 {
+                            Vec::new()
+                        } else {
+                            lowered[a].taylor(j, degrees[a] as usize + 1, frame.bits)
+                        }
+                    })
+                })
                 .collect(),
         )
     }
@@ -40,7 +48,14 @@ impl<S: Scalar> LeadingPoints<S> {
 ///
 /// `raised[m − 1][b]`, `lowered[m − 1][a]` are the functions at order m; `earlier[n − m]` the solution.
 /// Cost: 8 n (points) len²/2 multiplications for each i.
-pub fn sources<S: Scalar>(frame: &Frame, n: usize, len: usize, raised: &[[Laurent<S>; 4]], lowered: &[[Laurent<S>; 4]], earlier: &[Orders<S>]) -> Vec<[Block<S>; 4]> {
+pub fn sources<S: Scalar>(
+    frame: &Frame,
+    n: usize,
+    len: usize,
+    raised: &[[Laurent<S>; 4]],
+    lowered: &[[Laurent<S>; 4]],
+    earlier: &[Orders<S>],
+) -> Vec<[Block<S>; 4]> {
     (1..=frame.points)
         .into_par_iter()
         .map(|j| {
@@ -56,10 +71,22 @@ pub fn sources<S: Scalar>(frame: &Frame, n: usize, len: usize, raised: &[[Lauren
                         for t in 0..len {
                             let bits = frame.bits_at(j, t);
                             if let Some(up) = &up {
-                                block[4 * len + t].dot(false, Run::forward(up, 0), Run::backward(old, a * before.len + t), t + 1, bits);
+                                block[4 * len + t].dot(
+                                    false,
+                                    Run::forward(up, 0),
+                                    Run::backward(old, a * before.len + t),
+                                    t + 1,
+                                    bits,
+                                );
                             }
                             if let Some(down) = &down {
-                                block[a * len + t].dot(false, Run::forward(down, 0), Run::backward(old, 4 * before.len + t), t + 1, bits);
+                                block[a * len + t].dot(
+                                    false,
+                                    Run::forward(down, 0),
+                                    Run::backward(old, 4 * before.len + t),
+                                    t + 1,
+                                    bits,
+                                );
                             }
                         }
                     }
@@ -72,7 +99,13 @@ pub fn sources<S: Scalar>(frame: &Frame, n: usize, len: usize, raised: &[[Lauren
 
 /// Carries the values at v = N + ½ (`start[i][a]`) down to v = ½, with the given sources, which are
 /// replaced by the solution.
-pub fn sweep<S: Scalar>(frame: &Frame, leading: &LeadingPoints<S>, len: usize, start: [[Vec<S>; 4]; 4], mut blocks: Vec<[Block<S>; 4]>) -> Orders<S> {
+pub fn sweep<S: Scalar>(
+    frame: &Frame,
+    leading: &LeadingPoints<S>,
+    len: usize,
+    start: [[Vec<S>; 4]; 4],
+    mut blocks: Vec<[Block<S>; 4]>,
+) -> Orders<S> {
     let mut columns: [Vec<&mut Block<S>>; 4] = std::array::from_fn(|_| Vec::with_capacity(blocks.len()));
     for block in &mut blocks {
         for (column, part) in columns.iter_mut().zip(block.iter_mut()) {
@@ -80,13 +113,20 @@ pub fn sweep<S: Scalar>(frame: &Frame, leading: &LeadingPoints<S>, len: usize, s
         }
     }
     let work: Vec<(Vec<&mut Block<S>>, [Vec<S>; 4])> = columns.into_iter().zip(start).collect();
-    let ends: Vec<[Vec<S>; 4]> = work.into_par_iter().map(|(column, start)| sweep_one(frame, leading, len, start, column)).collect();
+    let ends: Vec<[Vec<S>; 4]> =
+        work.into_par_iter().map(|(column, start)| sweep_one(frame, leading, len, start, column)).collect();
     let mut ends = ends.into_iter();
     let end = std::array::from_fn(|_| ends.next().unwrap_or_else(|| std::array::from_fn(|_| Vec::new())));
     Orders { len, blocks, end }
 }
 
-fn sweep_one<S: Scalar>(frame: &Frame, leading: &LeadingPoints<S>, len: usize, start: [Vec<S>; 4], column: Vec<&mut Block<S>>) -> [Vec<S>; 4] {
+fn sweep_one<S: Scalar>(
+    frame: &Frame,
+    leading: &LeadingPoints<S>,
+    len: usize,
+    start: [Vec<S>; 4],
+    column: Vec<&mut Block<S>>,
+) -> [Vec<S>; 4] {
     let mut q = start;
     for (index, block) in column.into_iter().enumerate().rev() {
         let j = index + 1;
@@ -96,7 +136,13 @@ fn sweep_one<S: Scalar>(frame: &Frame, leading: &LeadingPoints<S>, len: usize, s
             let factor = &p[partner(b)];
             for t in 0..len {
                 let count = factor.len().min(t + 1);
-                s[t].dot(raising_is_negative(b), Run::forward(factor, 0), Run::backward(&q[b], t), count, frame.bits_at(j, t));
+                s[t].dot(
+                    raising_is_negative(b),
+                    Run::forward(factor, 0),
+                    Run::backward(&q[b], t),
+                    count,
+                    frame.bits_at(j, t),
+                );
             }
         }
         for _ in 0..frame.wrap() {

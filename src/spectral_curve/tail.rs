@@ -3,7 +3,7 @@
 //! In symmetric form, δQ_a = −P_a P^b μQ_b with δ = 2 sinh(∂/2), μ = cosh(∂/2) (valid since
 //! P_a P^a = 0). On v^{z+ε}, whose ε^j coefficient is v^z l_j, both act by binomials:
 //! μ v^{z+ε} = Σ_r 4^{−r} binom(z+ε, 2r) v^{z+ε−2r}, and δ has (f+ε)/(2r+1) times these at the same
-//! source, f the exponent reached. With S = s^{−L'} P-free part: S = s^{−L'} Σ_b p^b μQ_b, the equation
+//! source, f the exponent reached. With S = s^{−L'} Σ_b p^b μQ_b the equation
 //! at v^{z_a−1−k} reads M B_j + B_{j+1} = −(everything known), see [`super::pivots`].
 
 use super::frame::Frame;
@@ -92,7 +92,8 @@ pub fn add_product<S: Scalar>(target: &mut [Vec<S>], factor: &Laurent<S>, source
 /// binom(f + 2r + ε, 2r) 4^{−r} for r = 1 … count, and the same over 2r + 1: rows [power of ε][r − 1].
 fn binomials(f: i64, count: usize, logs: usize, bits: i64) -> (Vec<Vec<Real>>, Vec<Vec<Real>>) {
     let mut current: Vec<Real> = (0..=logs).map(|i| Real::from_i64(i64::from(i == 0))).collect();
-    let (mut plain, mut divided) = (vec![Vec::with_capacity(count); logs + 1], vec![Vec::with_capacity(count); logs + 1]);
+    let (mut plain, mut divided) =
+        (vec![Vec::with_capacity(count); logs + 1], vec![Vec::with_capacity(count); logs + 1]);
     for r in 1..=count as i64 {
         for factor in [f + 2 * r - 1, f + 2 * r] {
             for i in (0..=logs).rev() {
@@ -129,7 +130,15 @@ pub struct Leading<'a, S> {
 /// k = 0 (order zero); otherwise everything is driven by the sources. Returns the expansion and the
 /// magnitude (power of 2) of the largest violated solvability condition, relative to its entries.
 /// Cost ∝ terms² · logs² multiplications at a precision falling with k.
-pub fn solve<S: Scalar>(frame: &Frame, lead: &Leading<S>, i: usize, n: usize, logs: usize, sources: Sources<S>, normalised: bool) -> (Tail<S>, i64) {
+pub fn solve<S: Scalar>(
+    frame: &Frame,
+    lead: &Leading<S>,
+    i: usize,
+    n: usize,
+    logs: usize,
+    sources: Sources<S>,
+    normalised: bool,
+) -> (Tail<S>, i64) {
     let mut tail = Tail::new(frame, logs);
     tail.s = sources.s;
     let mut rest = sources.r;

@@ -39,12 +39,22 @@ fn konishi(digits: u32) -> OneLoop {
 
 fn terms(list: &[(&[u32], &str)]) -> Vec<Term> {
     list.iter()
-        .map(|(zeta, value)| Term { zeta: zeta.iter().map(|&k| Zeta::Single(k)).collect(), value: vec![value.to_string()] })
+        .map(|(zeta, value)| Term {
+            zeta: zeta.iter().map(|&k| Zeta::Single(k)).collect(),
+            value: vec![value.to_string()],
+        })
         .collect()
 }
 
 fn exact(order: usize, list: &[(&[u32], &str)]) -> Coefficient {
-    Coefficient { order, status: Status::Exact, terms: terms(list), parts: None, spare_digits: None, numbers: Vec::new() }
+    Coefficient {
+        order,
+        status: Status::Exact,
+        terms: terms(list),
+        parts: None,
+        spare_digits: None,
+        numbers: Vec::new(),
+    }
 }
 
 /// Konishi through four loops (FSSZ, arXiv:0712.3522).
@@ -66,7 +76,13 @@ fn konishi_orbit() -> Orbit {
     }
 }
 
-fn extend_konishi(orbit: &Orbit, loops: usize, digits: Option<u32>, memory: Option<u64>, stages: &Stages) -> Result<Extension> {
+fn extend_konishi(
+    orbit: &Orbit,
+    loops: usize,
+    digits: Option<u32>,
+    memory: Option<u64>,
+    stages: &Stages,
+) -> Result<Extension> {
     let one_loop = |digits| Ok(vec![konishi(digits)]);
     extend(&Request { family: KONISHI, orbit, one_loop: &one_loop, loops, digits, memory }, stages, &Silent)
 }
@@ -109,13 +125,19 @@ fn konishi_seven_and_eight_loops() {
         serde_json::to_string(&found.terms).unwrap()
     };
     let seventh = text(7);
-    for (zeta, value) in [("[]", "-2135040"), ("[3]", "5230080"), ("[3,3,3]", "124416"), ("[3,7]", "-1935360"), ("[11]", "7318080")] {
+    for (zeta, value) in
+        [("[]", "-2135040"), ("[3]", "5230080"), ("[3,3,3]", "124416"), ("[3,7]", "-1935360"), ("[11]", "7318080")]
+    {
         assert!(seventh.contains(&format!("{{\"zeta\":{zeta},\"value\":[\"{value}\"]}}")), "{zeta}: {seventh}");
     }
     let eighth = text(8);
-    for (zeta, value) in
-        [("[]", "54408192"), ("[11]", "65929248/5"), ("[13]", "-106007616"), ("[[3,5,3]]", "684288/5"), ("[3,[5,3]]", "-684288/5")]
-    {
+    for (zeta, value) in [
+        ("[]", "54408192"),
+        ("[11]", "65929248/5"),
+        ("[13]", "-106007616"),
+        ("[[3,5,3]]", "684288/5"),
+        ("[3,[5,3]]", "-684288/5"),
+    ] {
         assert!(eighth.contains(&format!("{{\"zeta\":{zeta},\"value\":[\"{value}\"]}}")), "{zeta}: {eighth}");
     }
 }
@@ -138,7 +160,12 @@ fn assert_close(found: &Float, expected: &[(&[u32], &str)], digits: i32) {
         sum += product_value(&term.zeta, 200) * Rational::parse(&term.value[0]).map(Rational::from).unwrap();
     }
     let error = Float::with_val(200, found - &sum).abs();
-    assert!(error < Float::with_val(200, sum.abs_ref()) * Float::with_val(200, rug::ops::Pow::pow(Float::with_val(200, 10), -digits)), "{found} against {sum}");
+    assert!(
+        error
+            < Float::with_val(200, sum.abs_ref())
+                * Float::with_val(200, rug::ops::Pow::pow(Float::with_val(200, 10), -digits)),
+        "{found} against {sum}"
+    );
 }
 
 /// L = 5: loops 2 and 5 FSS, arXiv:0908.0234; loop 6 found by an independent program.
@@ -147,8 +174,15 @@ fn five_fields_through_six_loops() {
     let gamma = numbers::<Real>(Family { length: 5, magnons: 2 }, Parity::Symmetric, 6, 30);
     assert_close(&gamma[1], &[(&[], "-24")], 30);
     assert_close(&gamma[4], &[(&[], "6664"), (&[3], "1152"), (&[5], "3840"), (&[7], "-2240")], 30);
-    let sixth: &[(&[u32], &str)] =
-        &[(&[], "-49176"), (&[3], "-17152"), (&[5], "-19712"), (&[3, 3], "6144"), (&[7], "-67200"), (&[3, 5], "-7680"), (&[9], "64512")];
+    let sixth: &[(&[u32], &str)] = &[
+        (&[], "-49176"),
+        (&[3], "-17152"),
+        (&[5], "-19712"),
+        (&[3, 3], "6144"),
+        (&[7], "-67200"),
+        (&[3, 5], "-7680"),
+        (&[9], "64512"),
+    ];
     assert_close(&gamma[5], sixth, 30);
 }
 
@@ -235,7 +269,11 @@ fn a_resumed_run_gives_the_same() {
     assert_eq!(first.coefficients, second.coefficients);
     assert_eq!(kept.lock().unwrap().len(), 5);
     assert_eq!(first.coefficients[0].status, Status::Numeric);
-    assert!(first.coefficients[0].numbers[0].starts_with("37519.4705591497859522069"), "{:?}", first.coefficients[0].numbers);
+    assert!(
+        first.coefficients[0].numbers[0].starts_with("37519.4705591497859522069"),
+        "{:?}",
+        first.coefficients[0].numbers
+    );
 }
 
 #[test]

@@ -28,7 +28,9 @@ impl Traces {
 
     /// Tr(x ω^m), m = 0 … d − 1, for x = Σ value_k ω^k.
     pub fn of(&self, value: &[Rational]) -> Vec<Rational> {
-        (0..self.degree).map(|m| value.iter().enumerate().map(|(k, c)| Rational::from(c * &self.sums[k + m])).sum()).collect()
+        (0..self.degree)
+            .map(|m| value.iter().enumerate().map(|(k, c)| Rational::from(c * &self.sums[k + m])).sum())
+            .collect()
     }
 
     /// The x with these traces; None only if the polynomial has a repeated root.
@@ -52,7 +54,13 @@ impl Traces {
 
     /// Recognises γ_n from its values at all real embeddings. Each trace Tr(γ_n ω^m) is a rational
     /// combination of the basis; returns the coefficients `[basis][power of ω]` and the least spare digits.
-    pub fn recognise(&self, omegas: &[Float], values: &[Float], errors: &[Float], basis: &[Float]) -> Option<(Vec<Vec<Rational>>, f64)> {
+    pub fn recognise(
+        &self,
+        omegas: &[Float],
+        values: &[Float],
+        errors: &[Float],
+        basis: &[Float],
+    ) -> Option<(Vec<Vec<Rational>>, f64)> {
         let bits = values[0].prec();
         let mut spare = f64::INFINITY;
         let mut traces = vec![Vec::new(); basis.len()];

@@ -7,10 +7,9 @@
 
 use super::fmpz::Fmpz;
 use flint3_sys::{
-    acb_approx_dot, acb_clear, acb_init, acb_struct, arb_approx_dot, arb_clear, arb_init, arb_struct,
-    arb_swap, arf_abs_bound_lt_2exp_si, arf_add, arf_div, arf_div_si, arf_get_fmpz_2exp, arf_is_zero, arf_mul_2exp_si,
-    arf_mul_rnd_down, arf_mul_si, arf_neg, arf_rnd_t_ARF_RND_DOWN as DOWN, arf_set, arf_set_fmpz_2exp,
-    arf_sub,
+    acb_approx_dot, acb_clear, acb_init, acb_struct, arb_approx_dot, arb_clear, arb_init, arb_struct, arb_swap,
+    arf_abs_bound_lt_2exp_si, arf_add, arf_div, arf_div_si, arf_get_fmpz_2exp, arf_is_zero, arf_mul_2exp_si,
+    arf_mul_rnd_down, arf_mul_si, arf_neg, arf_rnd_t_ARF_RND_DOWN as DOWN, arf_set, arf_set_fmpz_2exp, arf_sub,
 };
 use rug::{Float, Integer, Rational};
 
@@ -103,7 +102,13 @@ pub trait Scalar: Clone + Send + Sync + 'static {
     /// The product with a real number.
     fn scale(&self, factor: &Real, bits: i64) -> Self {
         let mut result = Self::zero();
-        result.dot_real(false, Run::forward(std::slice::from_ref(factor), 0), Run::forward(std::slice::from_ref(self), 0), 1, bits);
+        result.dot_real(
+            false,
+            Run::forward(std::slice::from_ref(factor), 0),
+            Run::forward(std::slice::from_ref(self), 0),
+            1,
+            bits,
+        );
         result
     }
 
@@ -144,7 +149,9 @@ impl Real {
 
     /// A finite MPFR number, exactly (anything else becomes zero).
     pub fn from_float(value: &Float) -> Real {
-        value.to_integer_exp().map_or_else(Real::zero, |(mantissa, exponent)| Real::from_scaled(&mantissa, i64::from(exponent)))
+        value
+            .to_integer_exp()
+            .map_or_else(Real::zero, |(mantissa, exponent)| Real::from_scaled(&mantissa, i64::from(exponent)))
     }
 
     /// Mantissa and exponent: the value is mantissa · 2^exponent.
