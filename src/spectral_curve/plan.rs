@@ -122,7 +122,7 @@ pub fn cost(family: Family, parity: Parity, embeddings: usize, run: &Run) -> Cos
     let multiplication = 3e-9 * limbs.powf(1.6) + 3e-8;
     Cost {
         bytes: bytes as u64,
-        seconds: embeddings as f64 * (recursion * 0.6 + expansion * 0.6) * multiplication * products,
+        seconds: embeddings as f64 * (recursion * 0.35 + expansion * 0.35) * multiplication * products,
     }
 }
 
