@@ -173,7 +173,11 @@ impl Observer for Progress {
                 return self.say(&text);
             }
             Event::Stage { family, stage } => {
-                state.families.entry(family.clone()).or_default().stage = stage;
+                // A new stage counts in its own units (primes, orders, …), from the start.
+                let active = state.families.entry(family.clone()).or_default();
+                active.stage = stage;
+                active.orbits = None;
+                active.units.clear();
                 family
             }
             Event::Planned { family, orbit, unit, total } => {
