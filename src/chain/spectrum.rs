@@ -22,7 +22,7 @@ use crate::error::{Error, Result};
 use crate::family::Family;
 use crate::observer::{Event, Observer};
 use crate::record::Parity;
-use rayon::iter::{IntoParallelIterator, IntoParallelRefIterator, ParallelIterator};
+use rayon::iter::{IntoParallelIterator, IntoParallelRefIterator, IntoParallelRefMutIterator, ParallelIterator};
 use rug::Integer;
 use std::cmp::Ordering;
 use std::sync::OnceLock;
@@ -166,7 +166,7 @@ impl Chain {
             pending.push(Pending::new(self, factor, &images[0])?);
         }
         loop {
-            pending.par_iter_mut_advance(&images);
+            pending.par_iter_mut().filter(|orbit| !orbit.done).for_each(|orbit| orbit.advance(&images));
             if pending.iter().all(|orbit| orbit.done) {
                 break;
             }
@@ -208,17 +208,6 @@ impl Chain {
 
 fn residues(field: &PrimeField, elements: &[u64]) -> Vec<u64> {
     elements.iter().map(|c| field.residue(*c)).collect()
-}
-
-trait Advance {
-    fn par_iter_mut_advance(&mut self, images: &[Image]);
-}
-
-impl Advance for Vec<Pending> {
-    fn par_iter_mut_advance(&mut self, images: &[Image]) {
-        use rayon::iter::IntoParallelRefMutIterator;
-        self.par_iter_mut().filter(|orbit| !orbit.done).for_each(|orbit| orbit.advance(images));
-    }
 }
 
 /// An orbit whose transfer matrix is being reconstructed.

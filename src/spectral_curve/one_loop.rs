@@ -1,6 +1,7 @@
 //! The Baxter pair in decimals, from the transfer-matrix eigenvalue (formulas §1).
 
 use super::input::OneLoop;
+use super::start::{product, shift_half};
 use crate::algebra::flint::complex_roots;
 use crate::algebra::flint::dense::{Complex, Real, Scalar};
 use crate::chain::Orbit;
@@ -42,7 +43,7 @@ pub fn of_orbit(orbit: &Orbit, digits: u32) -> Result<Vec<OneLoop>> {
             continue;
         }
         let shifted: Vec<Complex> = orbit.transfer.iter().map(|numerator| image(numerator)).collect();
-        let transfer = shift(&shifted, -1, precision);
+        let transfer = shift_half(&shifted, -1, precision);
         let q = first_solution(&transfer, orbit.family.length, orbit.family.magnons, precision);
         let r = second_solution(&q, orbit.family.length, precision);
         let pairs = |list: &[Complex]| list.iter().map(|c| (c.re().to_float(bits), c.im().to_float(bits))).collect();
@@ -70,41 +71,17 @@ fn horner(poly: &[Integer], x: &Complex, bits: i64) -> Complex {
     })
 }
 
-/// X(v + sign/2).
-fn shift(x: &[Complex], sign: i64, bits: i64) -> Vec<Complex> {
-    let mut result = x.to_vec();
-    for lowest in 0..result.len() {
-        for j in (lowest..result.len() - 1).rev() {
-            let mut term = result[j + 1].clone();
-            term.shift(-1);
-            term.mul_small(sign, bits);
-            result[j].add(&term, bits);
-        }
-    }
-    result
-}
-
-fn product(x: &[Complex], y: &[Complex], bits: i64) -> Vec<Complex> {
-    let mut result = Complex::zeros(x.len() + y.len() - 1);
-    for (i, a) in x.iter().enumerate() {
-        for (j, b) in y.iter().enumerate() {
-            result[i + j].add_mul(a, b, bits);
-        }
-    }
-    result
-}
-
 /// Q monic of degree M with T Q = (v+½)^L Q(v−1) + (v−½)^L Q(v+1): the v^{L−2+k} coefficient
 /// determines the v^k term, with factor (M−k)(L−M+1−k) up to sign, which never vanishes for k < M.
 fn first_solution(transfer: &[Complex], length: usize, magnons: usize, bits: i64) -> Vec<Complex> {
     let power = |sign: i64| {
         let mut poly = Complex::zeros(length + 1);
         poly[length] = Complex::from_real(&Real::from_i64(1));
-        shift(&poly, sign, bits)
+        shift_half(&poly, sign, bits)
     };
     let (up, down) = (power(1), power(-1));
     let excess = |q: &[Complex]| {
-        let once = |sign: i64| shift(&shift(q, sign, bits), sign, bits);
+        let once = |sign: i64| shift_half(&shift_half(q, sign, bits), sign, bits);
         let mut sum = product(transfer, q, bits);
         for part in [product(&up, &once(-1), bits), product(&down, &once(1), bits)] {
             sum.iter_mut().zip(&part).for_each(|(a, b)| a.sub(b, bits));
@@ -130,13 +107,13 @@ fn first_solution(transfer: &[Complex], length: usize, magnons: usize, bits: i64
 fn second_solution(q: &[Complex], length: usize, bits: i64) -> Vec<Complex> {
     let magnons = q.len() - 1;
     let degree = length + 1 - magnons;
-    let (plus, minus) = (shift(q, 1, bits), shift(q, -1, bits));
+    let (plus, minus) = (shift_half(q, 1, bits), shift_half(q, -1, bits));
     let mut r = Complex::zeros(degree + 1);
     r[degree] = Complex::from_real(&Real::from_i64(1));
     for k in (0..degree).rev().filter(|&k| k != magnons) {
         let Some(place) = (k + magnons).checked_sub(1) else { continue };
-        let mut wrong = product(&plus, &shift(&r, -1, bits), bits)[place].clone();
-        wrong.sub(&product(&minus, &shift(&r, 1, bits), bits)[place], bits);
+        let mut wrong = product(&plus, &shift_half(&r, -1, bits), bits)[place].clone();
+        wrong.sub(&product(&minus, &shift_half(&r, 1, bits), bits)[place], bits);
         wrong.div_small(k as i64 - magnons as i64, bits);
         r[k] = wrong;
     }

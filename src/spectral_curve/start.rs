@@ -127,7 +127,7 @@ fn divide_linear<S: Scalar>(x: &[S], sign: i64, bits: i64) -> (Poly<S>, S) {
 }
 
 /// X(v + sign/2).
-fn shift_half<S: Scalar>(x: &[S], sign: i64, bits: i64) -> Poly<S> {
+pub(super) fn shift_half<S: Scalar>(x: &[S], sign: i64, bits: i64) -> Poly<S> {
     let mut result = x.to_vec();
     for lowest in 0..result.len() {
         for j in (lowest..result.len() - 1).rev() {
@@ -140,7 +140,7 @@ fn shift_half<S: Scalar>(x: &[S], sign: i64, bits: i64) -> Poly<S> {
     result
 }
 
-fn product<S: Scalar>(x: &[S], y: &[S], bits: i64) -> Poly<S> {
+pub(super) fn product<S: Scalar>(x: &[S], y: &[S], bits: i64) -> Poly<S> {
     let mut result = S::zeros((x.len() + y.len()).saturating_sub(1));
     for (i, a) in x.iter().enumerate() {
         for (j, b) in y.iter().enumerate() {
